@@ -1,0 +1,1 @@
+"""The phone: screens, store and outbox. Run by Brython in the browser."""

@@ -1,0 +1,299 @@
+"""Builds the phone: translates its Python ahead of time and lays out the files that a server hands over.
+
+Run by hatchling when the wheel is built (the result lands in fieldcheck/_data/phone), and by hand in a checkout:
+
+    python webui/build.py [--out webui/dist] [--cache webui/.cache]
+
+The result is index.html, manifest.json and the folder a/ of files whose names carry their content's hash.
+Nothing in it runs text as code, stands inline, or needs more than `script-src 'self'; style-src 'self'`.
+"""
+
+from __future__ import annotations
+
+import argparse
+import ast
+import base64
+import hashlib
+import json
+import re
+import shutil
+import sys
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+
+try:
+    from hatchling.builders.hooks.plugin.interface import BuildHookInterface
+except ImportError:  # a checkout without hatchling can build the phone all the same
+    BuildHookInterface = object
+
+sys.path.insert(0, str(Path(__file__).resolve().parent))
+from translate import Module, TranslationError, Translator
+
+# Which module goes to which chunk: the longest name here that is the module's, or a package above it, decides.
+# The page loads "core" to start; the rest comes when it is idle or asked for.
+CHUNKS = {
+    "__main__": "core",
+    "app": "core",
+    "app.screens": "screens",
+    "fieldcheck": "core",
+    "fieldcheck.engine.physics": "physics",
+    "fieldcheck.engine.physics.registry": "physics",
+}
+ONE_EACH = {"physics"}  # each module below gets a chunk of its own: physics.windings, physics.rectifiers, ...
+STDLIB = ["math"]  # modules of Brython's standard library that ship with core
+BUILT_IN = {"browser", "javascript", "sys"}  # inside brython.js
+NOT_BUILT_IN = {"timer", "ajax", "svg", "local_storage", "session_storage", "template", "websocket", "worker"}
+MAIN = "from app.main import start\nstart()\n"
+
+PAGE = """<!doctype html>
+<html lang="en">
+<head>
+<meta charset="utf-8">
+<meta name="viewport" content="width=device-width, initial-scale=1, viewport-fit=cover">
+<title>fieldcheck</title>
+{{css}}
+{{scripts}}
+</head>
+<body>
+<noscript>fieldcheck needs JavaScript.</noscript>
+</body>
+</html>
+"""
+
+
+@dataclass(frozen=True)
+class Manifest:
+    """What a build made. files: path below the folder -> {"sha256": hex, "integrity": text, "bytes": n}."""
+
+    version: str
+    build: str
+    chunks: dict[str, dict[str, Any]]
+    files: dict[str, dict[str, Any]]
+    translated: int = field(default=0, compare=False)
+
+
+@dataclass
+class Folder:
+    """The folder being filled: writes files under hashed names and remembers them."""
+
+    out: Path
+    files: dict[str, dict[str, Any]] = field(default_factory=dict)
+
+    def put(self, path: str, data: bytes) -> str:
+        """Writes data at exactly this path."""
+        target = self.out / path
+        target.parent.mkdir(parents=True, exist_ok=True)
+        target.write_bytes(data)
+        digest = hashlib.sha256(data)
+        integrity = "sha256-" + base64.b64encode(digest.digest()).decode()
+        self.files[path] = {"sha256": digest.hexdigest(), "integrity": integrity, "bytes": len(data)}
+        return path
+
+    def put_hashed(self, name: str, data: bytes) -> str:
+        """Writes data as a/<name>.<12 hex>.<ext>; returns that path."""
+        stem, _, ext = name.rpartition(".")
+        return self.put(f"a/{stem}.{hashlib.sha256(data).hexdigest()[:12]}.{ext}", data)
+
+
+def chunk_of(name: str) -> str:
+    """The chunk that a module belongs to, by the table CHUNKS."""
+    above = [known for known in CHUNKS if name == known or name.startswith(known + ".")]
+    if not above:
+        raise TranslationError(f"{name}: the table CHUNKS in webui/build.py does not say to which chunk it goes")
+    nearest = max(above, key=len)
+    chunk = CHUNKS[nearest]
+    if chunk in ONE_EACH and name != nearest:
+        return f"{chunk}.{name[len(nearest) + 1 :].split('.')[0]}"
+    return chunk
+
+
+def modules_below(folder: Path, name: str, shown: str) -> list[Module]:
+    """Every module of the package in `folder`, sorted by name. shown: the folder's path as tracebacks show it."""
+    found: dict[str, Module] = {}
+    for path in sorted(folder.rglob("*.py")):
+        parts = path.relative_to(folder).with_suffix("").parts
+        package = parts[-1] == "__init__"
+        dotted = ".".join((name, *(parts[:-1] if package else parts)))
+        file = f"{shown}/{path.relative_to(folder).as_posix()}"
+        found[dotted] = Module(dotted, file, path.read_text(encoding="utf-8"), package)
+    for dotted in list(found):
+        while dotted != name:  # a folder without __init__.py is a package too
+            dotted = dotted.rpartition(".")[0]
+            file = shown + dotted[len(name) :].replace(".", "/") + "/__init__.py"
+            found.setdefault(dotted, Module(dotted, file, "", True))
+    return [found[dotted] for dotted in sorted(found)]
+
+
+def phone_modules(repo: Path) -> tuple[list[Module], str]:
+    """All Python of the phone, and the version: the engine, webui/app, a bare `fieldcheck`, and the program."""
+    found = re.search(r'^__version__ = "(.+)"$', (repo / "fieldcheck" / "__init__.py").read_text(), re.M)
+    version = found.group(1) if found else "0"
+    modules = [
+        Module("__main__", "app/__main__.py", MAIN),
+        Module("fieldcheck", "fieldcheck/__init__.py", f'__version__ = "{version}"\n', True),
+        *modules_below(repo / "fieldcheck" / "engine", "fieldcheck.engine", "fieldcheck/engine"),
+        *modules_below(repo / "webui" / "app", "app", "app"),
+    ]
+    for module in modules:
+        check_imports(module, {m.name for m in modules})
+    return modules, version
+
+
+def check_imports(module: Module, shipped: set[str]) -> None:
+    """TranslationError naming file and line of an import that the phone could not carry out."""
+    for node in ast.walk(ast.parse(module.source, module.file)):
+        if isinstance(node, ast.Import):
+            names = [alias.name for alias in node.names]
+        elif isinstance(node, ast.ImportFrom):
+            names = [absolute(node, module)]
+        else:
+            continue
+        for name in names:
+            parts = [*name.split("."), *(a.name for a in node.names if name == "browser")]
+            known = name in shipped or name in STDLIB or parts[0] in BUILT_IN
+            if not known or (parts[0] == "browser" and NOT_BUILT_IN.intersection(parts)):
+                raise TranslationError(
+                    f"{module.file}:{node.lineno}: the phone has no module {'.'.join(parts)}\n"
+                    f"    it has the engine, app, {', '.join(sorted([*BUILT_IN, *STDLIB]))}"
+                )
+
+
+def absolute(node: ast.ImportFrom, module: Module) -> str:
+    """The dotted name that `from ... import` means, dots in front resolved."""
+    if node.level == 0:
+        return node.module or ""
+    above = module.name.split(".") if module.package else module.name.split(".")[:-1]
+    above = above[: len(above) - (node.level - 1)]
+    return ".".join([*above, node.module] if node.module else above)
+
+
+def chunk_texts(modules: list[Module], translator: Translator) -> dict[str, str]:
+    """Chunk name -> JavaScript text that registers its modules, core with the standard library's."""
+    entries: dict[str, list[str]] = {"core": []}
+    for name in STDLIB:
+        entries["core"].append(entry(name, f"stdlib/{name}.js", False, True, translator.stdlib(name)))
+    for module in modules:
+        line = entry(module.name, module.file, module.package, False, translator.function(module))
+        entries.setdefault(chunk_of(module.name), []).append(line)
+    return {name: register(name, lines) for name, lines in sorted(entries.items())}
+
+
+def entry(name: str, file: str, package: bool, javascript: bool, function: str) -> str:
+    """One line of a chunk's table."""
+    facts = json.dumps({"pkg": package, "js": javascript, "file": file})[:-1]
+    return f"{json.dumps(name)}: {facts}, \"run\": {function}}}"
+
+
+def register(chunk: str, entries: list[str]) -> str:
+    """The text of a chunk: one call that hands its modules to the loader, in runtime/loader.js."""
+    return f"fieldcheckChunks.register({json.dumps(chunk)}, {{\n" + ",\n".join(entries) + "\n})\n"
+
+
+def build(out: Path, repo: Path, cache: Path | None = None, base: str = "") -> Manifest:
+    """Builds the phone of the checkout `repo` into the folder `out`, which is emptied first.
+
+    cache: where translations are kept (beside `out` when left out). base: put before every address in
+    index.html, as "/phone/"; empty for addresses relative to it.
+    Raises TranslationError when some Python cannot be shipped.
+    """
+    modules, version = phone_modules(repo)
+    with Translator(cache or out.parent / ".cache") as translator:
+        chunks = chunk_texts(modules, translator)
+        runtime = translator.runtime()
+        translated = translator.translated
+    if out.exists():
+        shutil.rmtree(out)
+    folder = Folder(out)
+    webui = repo / "webui"
+    styles = [folder.put_hashed(p.name, p.read_bytes()) for p in sorted((webui / "css").glob("*.css"))]
+    pictures = {p.name: folder.put_hashed(p.name, p.read_bytes()) for p in sorted((webui / "pictures").glob("*.svg"))}
+    icons = {p.name: folder.put_hashed(p.name, p.read_bytes()) for p in sorted((webui / "icons").glob("*.*"))}
+    scripts = [folder.put_hashed("brython.js", runtime.encode())]
+    for script in (webui / "runtime" / "loader.js", webui / "platform.js"):
+        scripts.append(folder.put_hashed(script.name, script.read_bytes()))
+    table = {}
+    for name, text in chunks.items():
+        if name != "core":
+            path = folder.put_hashed(f"{name}.js", text.encode())
+            table[name] = {"url": path.removeprefix("a/"), "integrity": folder.files[path]["integrity"]}
+    number = build_number(folder, chunks["core"])
+    head = {"version": version, "build": number, "pictures": pictures}
+    core = f"fieldcheckChunks.table({json.dumps(head)}, {json.dumps(table)})\n{chunks['core']}"
+    scripts.append(folder.put_hashed("core.js", core.encode()))
+    scripts.append(folder.put_hashed("boot.js", (webui / "runtime" / "boot.js").read_bytes()))
+    web_manifest = put_web_manifest(folder, webui / "manifest.webmanifest", icons)
+    folder.put("index.html", page(webui / "index.html", folder, styles, scripts, web_manifest, base).encode())
+    lines = {c: sum(m.source.count("\n") for m in modules if chunk_of(m.name) == c) for c in chunks}
+    listed = {c: {"python_lines": lines[c], **table.get(c, {})} for c in chunks}
+    made = Manifest(version, number, listed, folder.files, translated)
+    shown = {"version": version, "build": number, "chunks": listed, "files": made.files}
+    (out / "manifest.json").write_text(json.dumps(shown, indent=1, sort_keys=True) + "\n")
+    return made
+
+
+def build_number(folder: Folder, core: str) -> str:
+    """12 hex digits that change with any file of the phone."""
+    parts = [f"{path} {facts['sha256']}" for path, facts in sorted(folder.files.items())]
+    return hashlib.sha256("\n".join([*parts, core]).encode()).hexdigest()[:12]
+
+
+def put_web_manifest(folder: Folder, source: Path, icons: dict[str, str]) -> str:
+    """Copies manifest.webmanifest with its icons' names replaced by the hashed ones; "" when there is none."""
+    if not source.exists():
+        return ""
+    content = json.loads(source.read_text(encoding="utf-8"))
+    for icon in content.get("icons", []):
+        name = icon["src"].rpartition("/")[2]
+        icon["src"] = icons[name].removeprefix("a/")  # relative to the manifest, which lies in a/ too
+    return folder.put_hashed(source.name, json.dumps(content, ensure_ascii=False).encode())
+
+
+def page(template: Path, folder: Folder, styles: list[str], scripts: list[str], manifest: str, base: str) -> str:
+    """index.html: the template's {{css}} and {{scripts}} filled in, every file with its integrity."""
+    text = template.read_text(encoding="utf-8") if template.exists() else PAGE
+    css = [f'<link rel="stylesheet" href="{base}{p}" integrity="{folder.files[p]["integrity"]}">' for p in styles]
+    if manifest:
+        css.append(f'<link rel="manifest" href="{base}{manifest}">')
+    js = [f'<script defer src="{base}{p}" integrity="{folder.files[p]["integrity"]}"></script>' for p in scripts]
+    for place, filling in (("{{css}}", css), ("{{scripts}}", js)):
+        if text.count(place) != 1:
+            raise TranslationError(f"webui/index.html must hold {place} once, not {text.count(place)} times")
+        text = text.replace(place, "\n".join(filling))
+    return text
+
+
+class CustomBuildHook(BuildHookInterface):  # type: ignore[misc, valid-type]
+    """Puts the phone into the wheel; an editable install only gets it built in the checkout."""
+
+    def initialize(self, version: str, build_data: dict[str, Any]) -> None:
+        repo = Path(self.root)
+        out = repo / "webui" / "dist"
+        build(out, repo)
+        if version != "editable":
+            build_data["force_include"][str(out)] = "fieldcheck/_data/phone"
+
+
+def main() -> int:
+    repo = Path(__file__).resolve().parent.parent
+    options = argparse.ArgumentParser(description="Build the phone's files.")
+    options.add_argument("--out", type=Path, default=repo / "webui" / "dist", help="folder to fill (emptied first)")
+    options.add_argument("--cache", type=Path, default=None, help="where translations are kept")
+    options.add_argument("--base", default="", help="put before every address in index.html, as /phone/")
+    given = options.parse_args()
+    try:
+        made = build(given.out, repo, given.cache, given.base)
+    except TranslationError as error:
+        print(error, file=sys.stderr)
+        return 1
+    size = sum(facts["bytes"] for facts in made.files.values())
+    core = made.chunks["core"]["python_lines"]
+    print(
+        f"phone {made.version} build {made.build}: {len(made.files)} files, {size} bytes, "
+        f"{made.translated} modules translated, {core} lines of Python to start"
+    )
+    return 0
+
+
+if __name__ == "__main__":
+    sys.exit(main())
