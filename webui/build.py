@@ -217,12 +217,12 @@ def build(out: Path, repo: Path, cache: Path | None = None, base: str = "") -> M
         if name != "core":
             path = folder.put_hashed(f"{name}.js", text.encode())
             table[name] = {"url": path.removeprefix("a/"), "integrity": folder.files[path]["integrity"]}
+    boot = folder.put_hashed("boot.js", (webui / "runtime" / "boot.js").read_bytes())
+    web_manifest = put_web_manifest(folder, webui / "manifest.webmanifest", icons)
     number = build_number(folder, chunks["core"])
     head = {"version": version, "build": number, "pictures": pictures}
     core = f"fieldcheckChunks.table({json.dumps(head)}, {json.dumps(table)})\n{chunks['core']}"
-    scripts.append(folder.put_hashed("core.js", core.encode()))
-    scripts.append(folder.put_hashed("boot.js", (webui / "runtime" / "boot.js").read_bytes()))
-    web_manifest = put_web_manifest(folder, webui / "manifest.webmanifest", icons)
+    scripts += [folder.put_hashed("core.js", core.encode()), boot]
     folder.put("index.html", page(webui / "index.html", folder, styles, scripts, web_manifest, base).encode())
     lines = {c: sum(m.source.count("\n") for m in modules if chunk_of(m.name) == c) for c in chunks}
     listed = {c: {"python_lines": lines[c], **table.get(c, {})} for c in chunks}
