@@ -34,6 +34,7 @@ from translate import Module, TranslationError, Translator
 # The page loads "core" to start; the rest comes when it is idle or asked for.
 CHUNKS = {
     "__main__": "core",
+    "sys": "core",
     "app": "core",
     "app.screens": "screens",
     "fieldcheck": "core",
@@ -42,8 +43,10 @@ CHUNKS = {
 }
 ONE_EACH = {"physics"}  # each module below gets a chunk of its own: physics.windings, physics.rectifiers, ...
 STDLIB = ["math"]  # modules of Brython's standard library that ship with core
-BUILT_IN = {"browser", "javascript", "sys"}  # inside brython.js
+BUILT_IN = {"browser", "javascript", "sys"}  # inside brython.js, or SYS
 NOT_BUILT_IN = {"timer", "ajax", "svg", "local_storage", "session_storage", "template", "websocket", "worker"}
+# Brython prints what was not caught to sys.stderr of the module `sys`, of which the phone needs no more than this.
+SYS = "from _sys import stderr, stdout\n"
 MAIN = "from app.main import start\nstart()\n"
 
 PAGE = """<!doctype html>
@@ -131,11 +134,12 @@ def phone_modules(repo: Path) -> tuple[list[Module], str]:
     version = found.group(1) if found else "0"
     modules = [
         Module("__main__", "app/__main__.py", MAIN),
+        Module("sys", "stdlib/sys.py", SYS),
         Module("fieldcheck", "fieldcheck/__init__.py", f'__version__ = "{version}"\n', True),
         *modules_below(repo / "fieldcheck" / "engine", "fieldcheck.engine", "fieldcheck/engine"),
         *modules_below(repo / "webui" / "app", "app", "app"),
     ]
-    for module in modules:
+    for module in modules[3:]:
         check_imports(module, {m.name for m in modules})
     return modules, version
 
@@ -219,11 +223,12 @@ def build(out: Path, repo: Path, cache: Path | None = None, base: str = "") -> M
             table[name] = {"url": path.removeprefix("a/"), "integrity": folder.files[path]["integrity"]}
     boot = folder.put_hashed("boot.js", (webui / "runtime" / "boot.js").read_bytes())
     web_manifest = put_web_manifest(folder, webui / "manifest.webmanifest", icons)
+    links = stylesheet_links(folder, styles, base) + icon_links(icons, web_manifest, base)
     number = build_number(folder, chunks["core"])
     head = {"version": version, "build": number, "pictures": pictures}
     core = f"fieldcheckChunks.table({json.dumps(head)}, {json.dumps(table)})\n{chunks['core']}"
     scripts += [folder.put_hashed("core.js", core.encode()), boot]
-    folder.put("index.html", page(webui / "index.html", folder, styles, scripts, web_manifest, base).encode())
+    folder.put("index.html", page(webui / "index.html", links, script_tags(folder, scripts, base)).encode())
     lines = {c: sum(m.source.count("\n") for m in modules if chunk_of(m.name) == c) for c in chunks}
     listed = {c: {"python_lines": lines[c], **table.get(c, {})} for c in chunks}
     made = Manifest(version, number, listed, folder.files, translated)
@@ -249,14 +254,24 @@ def put_web_manifest(folder: Folder, source: Path, icons: dict[str, str]) -> str
     return folder.put_hashed(source.name, json.dumps(content, ensure_ascii=False).encode())
 
 
-def page(template: Path, folder: Folder, styles: list[str], scripts: list[str], manifest: str, base: str) -> str:
-    """index.html: the template's {{css}} and {{scripts}} filled in, every file with its integrity."""
+def stylesheet_links(folder: Folder, paths: list[str], base: str) -> list[str]:
+    return [f'<link rel="stylesheet" href="{base}{p}" integrity="{folder.files[p]["integrity"]}">' for p in paths]
+
+
+def script_tags(folder: Folder, paths: list[str], base: str) -> list[str]:
+    return [f'<script defer src="{base}{p}" integrity="{folder.files[p]["integrity"]}"></script>' for p in paths]
+
+
+def icon_links(icons: dict[str, str], web_manifest: str, base: str) -> list[str]:
+    """Links to the first SVG icon and to the web manifest, as far as there are any."""
+    drawn = [f'<link rel="icon" type="image/svg+xml" href="{base}{p}">' for p in icons.values() if p.endswith(".svg")]
+    return drawn[:1] + ([f'<link rel="manifest" href="{base}{web_manifest}">'] if web_manifest else [])
+
+
+def page(template: Path, links: list[str], scripts: list[str]) -> str:
+    """index.html: the template's {{css}} and {{scripts}} filled in."""
     text = template.read_text(encoding="utf-8") if template.exists() else PAGE
-    css = [f'<link rel="stylesheet" href="{base}{p}" integrity="{folder.files[p]["integrity"]}">' for p in styles]
-    if manifest:
-        css.append(f'<link rel="manifest" href="{base}{manifest}">')
-    js = [f'<script defer src="{base}{p}" integrity="{folder.files[p]["integrity"]}"></script>' for p in scripts]
-    for place, filling in (("{{css}}", css), ("{{scripts}}", js)):
+    for place, filling in (("{{css}}", links), ("{{scripts}}", scripts)):
         if text.count(place) != 1:
             raise TranslationError(f"webui/index.html must hold {place} once, not {text.count(place)} times")
         text = text.replace(place, "\n".join(filling))

@@ -29,12 +29,19 @@ globalThis.console = {log() {}, warn() {}, error() {}, info() {}, debug() {}}
 globalThis.URL = class URL { constructor(text) { this.pathname = text; this.search = ""; this.hash = "" } }
 0"""
 
-# Generated names come from a counter that starts at random: set back, so that equal source gives equal text.
+# Generated names come from counters and chance: set back each time, so that equal source gives equal text.
+STEADY = """
+let dice = 1
+Math.random = () => (dice = dice * 48271 % 2147483647) / 2147483647
+0"""
+NAME_COUNTER = "var uuid=Math.floor(Math.random()*1000000)"
+STEADY_COUNTER = "var uuid=100000;$B.reset_names=function(){uuid=100000}"
 TRANSLATOR = """
 __BRYTHON__.$options = {js_tab: 1}
 globalThis.translate = (name, file, source) => {
   const B = __BRYTHON__
-  B.$py_UUID = 1
+  B.$py_UUID = dice = 1
+  B.reset_names()
   B.url2name[file] = name
   const js = B.py2js({src: source, filename: file, imported: true}, name, name, B.builtins_scope).to_js()
   return js + "\\nreturn locals_" + B.scope_name(name)
@@ -182,7 +189,8 @@ class Translator:
 
     def _translate(self, module: Module) -> str:
         if self._v8 is None:
-            self._v8 = open_v8(brython_file("brython.js"))
+            whole = replaced_once(brython_file("brython.js"), NAME_COUNTER, STEADY_COUNTER, "the counter of names")
+            self._v8 = open_v8(STEADY[:-1] + whole)
             self._v8.eval(TRANSLATOR)
         try:
             js = self._v8.call("translate", module.name, module.file, without_docstrings(module.source))

@@ -7,6 +7,7 @@
   var chunks = Object.create(null)       // chunk name -> {url, integrity}
   var arrived = Object.create(null)      // chunk name -> true
   var loading = Object.create(null)      // chunk name -> promise
+  var failures = Object.create(null)     // chunk name -> how often it did not load
   var here = typeof document === 'undefined' || !document.currentScript ? '' : document.currentScript.src
 
   function run(name, module) {
@@ -70,11 +71,13 @@
     if (loading[name]) return loading[name]
     return loading[name] = new Promise(function (done, refuse) {
       var script = document.createElement('script')
-      script.src = new URL(chunks[name].url, here).href
+      var again = failures[name] ? '?' + failures[name] : ''     // past a cache that holds a damaged copy
+      script.src = new URL(chunks[name].url + again, here).href
       script.integrity = chunks[name].integrity
       script.onload = function () { done(name) }
       script.onerror = function () {     // forgotten, so that the next call tries again
         delete loading[name]
+        failures[name] = (failures[name] || 0) + 1
         script.remove()
         refuse(new Error('The part "' + name + '" of the program did not load.'))
       }
