@@ -14,6 +14,7 @@ two at most, unless the function says otherwise.
 
 import math
 
+from fieldcheck.engine.angles import PI as PI
 from fieldcheck.engine.angles import acos as acos
 from fieldcheck.engine.angles import asin as asin
 from fieldcheck.engine.angles import atan as atan

@@ -16,6 +16,10 @@ _ldexp = math.ldexp
 _LOG10_2 = 0.30102999566398120
 NARROW_SPACE = "\u202f"
 
+# U may be lowered by rounding by at most one part in this many (2.5 %). A bound of 5 % would never act on two digits
+# (10.5 -> 10 is 4.8 %) and could not give the GUM's own example 10.47 -> 11.
+_LOWERED_BY_AT_MOST = 40
+
 
 def _finite(x):
     x = float(x)
@@ -110,7 +114,7 @@ def significant(x, n):
 
 
 def round12(x):
-    """x to 12 significant digits: the float nearest to the rounded decimal. Both sides of a comparison go through it."""
+    """x to 12 significant digits, as the float nearest to that decimal: both sides of a comparison go through it."""
     x = _finite(x)
     if x == 0:
         return 0.0
@@ -162,7 +166,7 @@ def decimal_text(x):
 
 
 def engineering(x, n):
-    """Text and power of ten: x to n significant digits as text * 10^power, power a multiple of three, 1 <= text < 1000."""
+    """(text, power): x to n significant digits is text * 10^power, power a multiple of three, 1 <= |text| < 1000."""
     x = _finite(x)
     if n < 1:
         raise OutOfRange("at least one significant digit is needed")
@@ -175,17 +179,17 @@ def engineering(x, n):
 
 
 def grouped(text):
-    """Digits in threes from the decimal mark, by narrow no-break spaces; four in a row stay together (SI brochure 5.4.4).
+    """Digits in threes from the decimal mark, by narrow no-break spaces; four alone stay together (SI brochure 5.4.4).
 
     text: sign, digits and at most one "." or ",", with what may follow (exponent, unit) left as it is.
     """
-    start = 1 if text[:1] in ("-", "+", "\u2212") and text else 0
+    start = 1 if text[:1] in ("-", "+", "\u2212") else 0
     end = start
     while end < len(text) and text[end] in "0123456789":
         end += 1
     whole, rest, mark = text[start:end], text[end:], ""
     part = ""
-    if rest[:1] in (".", ",") and rest:
+    if rest[:1] in (".", ","):
         mark = rest[0]
         end = 1
         while end < len(rest) and rest[end] in "0123456789":
@@ -204,7 +208,7 @@ def _in_threes(digits, first):
 
 
 def _two_digits_of(U):
-    """d, places with U = d * 10^-places to two digits: nearest, but up where nearest would lower U by more than 2.5 %."""
+    """d, places with U = d * 10^-places to two digits: nearest, but up where nearest would lower U too much."""
     d, p = _written(U)
     n = len(str(d))
     places = 2 - n - p
@@ -214,7 +218,7 @@ def _two_digits_of(U):
     unit = 10 ** shift
     q = (2 * d + unit) // (2 * unit)
     lost = d - q * unit
-    if 40 * lost > d:
+    if _LOWERED_BY_AT_MOST * lost > d:
         q += 1
     return (q // 10, places - 1) if q == 100 else (q, places)
 
@@ -313,7 +317,7 @@ def _decimal_parts(text):
         _not_decimal(text)
     exponent = 0
     if mark:
-        bare = power[1:] if power[:1] in ("+", "-") and power else power
+        bare = power[1:] if power[:1] in ("+", "-") else power
         if not _all_digits(bare) or len(bare) > 5:
             _not_decimal(text)
         exponent = -int(bare) if power[0] == "-" else int(bare)
@@ -331,4 +335,5 @@ def _all_digits(text):
 
 def _not_decimal(text):
     shown = text if len(text) <= 40 else text[:40] + "..."
-    raise EntryError('"' + shown + '" is not a plain decimal number', "", "use digits with a point, as 120, -0.5 or 1.5e3")
+    raise EntryError('"' + shown + '" is not a plain decimal number', "",
+        "use digits with a point, as 120, -0.5 or 1.5e3")
