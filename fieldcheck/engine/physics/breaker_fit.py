@@ -129,7 +129,7 @@ def _covariance(slopes, scatter):
 def fit(currents, times, preloads=None):
     """BreakerFit of the trips.
 
-    currents: A, one a trip; times: s; preloads: current in A that the breaker rested at before each trip, None = all cold.
+    currents: A, one a trip; times: s; preloads: A at which the breaker rested before each trip, None = all cold.
     Raises OutOfRange when there are fewer than two trips or they do not settle both constants.
     """
     if preloads is None:
@@ -166,13 +166,13 @@ def _with_scatter(value, relative_u, found, what):
 
 
 def fitted_tau(currents, times, preloads=None):
-    """Time constant in s. Do not combine it with `fitted_limit` in one formula: they are correlated; see fitted_time."""
+    """Time constant in s. Not to be combined with `fitted_limit`: they are correlated; see fitted_time."""
     found = fit(currents, times, preloads)
     return _with_scatter(found.tau, found.u_ln_tau, found, "time constant")
 
 
 def fitted_limit(currents, times, preloads=None):
-    """Limiting current in A. Do not combine it with `fitted_tau` in one formula; see fitted_time."""
+    """Limiting current in A. Not to be combined with `fitted_tau`; see fitted_time."""
     found = fit(currents, times, preloads)
     return _with_scatter(found.i_limit, found.u_ln_limit, found, "limiting current")
 

@@ -112,7 +112,8 @@ def walther_constants(t1, nu1, t2, nu2):
     w1, w2 = _double_log(nu1 / MM2_PER_S), _double_log(nu2 / MM2_PER_S)
     slope = (w1 - w2) / (log_t2 - log_t1)
     if value_of(slope) <= 0.0:
-        raise OutOfRange("the viscosity must fall with temperature", "nu2", "check which value belongs to which temperature")
+        raise OutOfRange("the viscosity must fall with temperature", "nu2",
+                         "check which value belongs to which temperature")
     return w1 + slope * log_t1, slope
 
 
@@ -121,7 +122,8 @@ def viscosity_at(t, t1, nu1, t2, nu2):
     a, b = walther_constants(t1, nu1, t2, nu2)
     outer = a - b * log10(t + KELVIN)
     if value_of(outer) > 0.864:  # log10(log10(2e7)): beyond it the powers would run away
-        raise OutOfRange("the oil would be stiffer than ASTM D341 describes", "t", "take a thinner oil or a warmer place")
+        raise OutOfRange("the oil would be stiffer than ASTM D341 describes", "t",
+                         "take a thinner oil or a warmer place")
     nu = power(10.0, power(10.0, outer)) - 0.7
     if value_of(nu) < 2.0:
         raise OutOfRange("the oil would be thinner than ASTM D341 describes", "t")
@@ -245,7 +247,7 @@ def _judge_one(lubricant, t_work, nu_low, nu_high, consistencies, matrix, materi
 
 
 def choose(shelf, t_work, nu_low, nu_high, consistencies, matrix, materials):
-    """Every lubricant of the shelf as a Choice, those that fit first and nearest to the middle of the band, then the rest.
+    """Every lubricant of the shelf as a Choice: those that fit, nearest to the band's middle first, then the rest.
 
     shelf: list of dicts (id, type "oil" or "grease", base, nlgi, and viscosities as viscosity_on_shelf takes them);
     t_work: degC; nu_low, nu_high: wanted band in m2/s (of a grease: of its base oil); consistencies: wanted NLGI texts.

@@ -7,7 +7,7 @@ voltage (checks 4.5). All formulas: checks 4.1-4.4, DERIVED, agreed with integra
 """
 
 from fieldcheck.engine.errors import OutOfRange
-from fieldcheck.engine.measured import acos, asin, cos, maximum, minimum, sin, sqrt, value_of
+from fieldcheck.engine.measured import acos, asin, cos, exp, maximum, minimum, sin, sqrt, through, value_of
 
 PI = 3.141592653589793
 SQRT_2 = 1.4142135623730951
@@ -243,3 +243,43 @@ def range_voltage_share(v_open, cells, v_cell):
     if value_of(cells) < 1.0 or value_of(v_cell) <= 0.0:
         raise OutOfRange("there must be one cell or more, each standing more than zero volts", "cells")
     return v_open / (cells * v_cell)
+
+
+def _reading(v_open, r_source, r_series, i_saturation, n_vt, r_shunt, sign):
+    """Ohmmeter reading in ohm of a modelled cell, by halving on the junction's voltage; floats only."""
+    low, high = 0.0, v_open
+    for _ in range(200):
+        middle = 0.5 * (low + high)
+        if middle == low or middle == high:
+            break
+        through_cell = sign * i_saturation * (exp(sign * middle / n_vt) - 1.0) + middle / r_shunt
+        if (v_open - middle) / (r_source + r_series) > through_cell:
+            low = middle
+        else:
+            high = middle
+    current = (v_open - 0.5 * (low + high)) / (r_source + r_series)
+    return v_open / current - r_source
+
+
+def _model_reading(v_open, r_source, r_series, i_saturation, n_vt, r_shunt, sign):
+    for name, value in (("v_open", v_open), ("r_source", r_source), ("i_saturation", i_saturation), ("n_vt", n_vt),
+                        ("r_shunt", r_shunt)):
+        if value_of(value) <= 0.0:
+            raise OutOfRange(name + " must be above zero", name)
+    if value_of(v_open) > 600.0 * value_of(n_vt):
+        raise OutOfRange("the open voltage is too high for the model of the cell", "v_open")
+    return through(lambda *given: _reading(*given, sign), [v_open, r_source, r_series, i_saturation, n_vt, r_shunt])
+
+
+def ohmmeter_forward(v_open, r_source, r_series, i_saturation, n_vt, r_shunt):
+    """What an ohmmeter of open voltage `v_open` and source resistance `r_source` reads of a modelled cell, in ohm.
+
+    Cell: r_series, then an exponential junction (i_saturation, n_vt in V) beside r_shunt. It shows why a ratio
+    only ranks cells read on the same range (checks 4.5, DERIVED).
+    """
+    return _model_reading(v_open, r_source, r_series, i_saturation, n_vt, r_shunt, 1.0)
+
+
+def ohmmeter_reverse(v_open, r_source, r_series, i_saturation, n_vt, r_shunt):
+    """The same cell read the other way round."""
+    return _model_reading(v_open, r_source, r_series, i_saturation, n_vt, r_shunt, -1.0)
