@@ -182,4 +182,5 @@ ALIASES = (("temperature", "C", "degC"), ("temperature", "F", "degF"), ("tempera
             ("dynamic viscosity", "cP", "mPa.s"),
             ("let-through", "A2.s", "A2s"), ("torque", "Nm", "N.m"), ("torque", "mNm", "mN.m"),
             ("humidity", "%", "%RH"), ("ratio", "", "1"), ("count", "", "1"),
-            ("length", '"', "in"), ("penetration", "0.1mm", "0.1 mm"), ("volume", "ml", "mL"), ("volume", "cm3", "mL"))
+            ("length", '"', "in"), ("penetration", "0.1mm", "0.1 mm"), ("penetration", "×0.1mm", "0.1 mm"),
+            ("volume", "ml", "mL"), ("volume", "cm3", "mL"))

@@ -259,11 +259,14 @@ def dimension_name(dimension):
         if UNITS["u:" + symbol].dimension == dimension:
             return symbol if symbol == "ohm" else print_form(symbol).replace("Ω", "ohm")
     for first in _STEMS:
+        if power(UNITS["u:" + first].dimension, 2) == dimension:
+            return first + "²"
+    for first in _STEMS:
         a = UNITS["u:" + first].dimension
         for second in _STEMS:
             b = UNITS["u:" + second].dimension
             if multiply(a, b) == dimension:
-                return first + "²" if first == second else first + "·" + second
+                return first + "·" + second
             if divide(a, b) == dimension:
                 return first + "/" + second
     parts = []
