@@ -17,6 +17,7 @@ DEPTH = 32
 
 DIGITS = "0123456789"
 HEX = "0123456789abcdef"
+WORDS = (("true", True), ("false", False), ("null", None))
 BLANKS = " \n\r\t"
 CONTROLS = "".join([chr(code) for code in range(32)])
 SHORT = (("\n", "n"), ("\t", "t"), ("\r", "r"), ("\b", "b"), ("\f", "f"))
@@ -147,7 +148,12 @@ def read(text, limit=LIMIT):
     for control in CONTROLS:
         if control in text and (control not in blanks or _stands_in(control, texts)):
             raise EventError("a control character stands in the text", _place(text.split(control)[0]))
-    plain = texts if length == len(text) and "\\" not in text else [_unescaped(piece) for piece in texts]
+    if "\\" in text:
+        plain = [_unescaped(piece) for piece in texts]
+    elif length == len(text):
+        plain = texts
+    else:
+        plain = [piece if piece.isascii() else _counted(piece) for piece in texts]
     return _parse(between, plain, blanks, texts)
 
 
@@ -337,19 +343,17 @@ def _parse(between, texts, blanks, raw):
 
 def _scalar(segment, at, between, raw, number):
     """(value, position after it) of true, false, null or an integer that begins at `at`."""
-    if segment.startswith("true", at):
-        return True, at + 4
-    if segment.startswith("false", at):
-        return False, at + 5
-    if segment.startswith("null", at):
-        return None, at + 4
-    stop = at + 1 if segment[at] == "-" else at
+    mark = segment[at]
+    stop = at + 1 if mark == "-" else at
     first = stop
     end = len(segment)
     while stop < end and segment[stop] in DIGITS:
         stop += 1
     if stop == first:
-        raise _unexpected(segment[at], VALUE, between, raw, number, at + 1)
+        for word, value in WORDS:
+            if segment.startswith(word, at):
+                return value, at + len(word)
+        raise _unexpected(mark, VALUE, between, raw, number, at + 1)
     digits = segment[at:stop]
     fault = ""
     mend = "write the value as a text, as it was typed"

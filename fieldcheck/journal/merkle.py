@@ -30,14 +30,13 @@ def new_nodes(size: int, leaves: Iterable[str], look: Look) -> Iterable[Node]:
     fresh: dict[tuple[int, int], str] = {}
     for leaf in leaves:
         level, position, digest = 0, size, leaf
-        fresh[level, position] = digest
         yield level, position, digest
         while position & 1:
             left = fresh.pop((level, position - 1), None) or look(level, position - 1)
             digest = node_hash(left, digest)
             level, position = level + 1, position >> 1
-            fresh[level, position] = digest
             yield level, position, digest
+        fresh[level, position] = digest         # the left half of a subtree that is not yet full
         size += 1
 
 
