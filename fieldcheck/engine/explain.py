@@ -63,15 +63,24 @@ def probability_text(p):
     return percent(p)
 
 
+def _floor_at(x, places):
+    """The whole number of units of the last of `places` decimal places (negative: of tens) in x > 0, exactly."""
+    a, b = x.as_integer_ratio()
+    return a * 10 ** places // b if places >= 0 else a // (b * 10 ** -places)
+
+
 def rounded_down(x, digits=2):
-    """x > 0 as text with `digits` significant digits, never above x."""
-    text = figures.significant(x, digits)
-    if figures.parse_decimal(text) <= x:
-        return text
-    places = len(text.partition(".")[2])
-    less = str(int(text.replace(".", "")) - 1)
-    less = "0" * (places + 1 - len(less)) + less
-    return less[:-places] + "." + less[-places:] if places else less
+    """x > 0 as plain text with `digits` significant digits, never above x."""
+    places = 0
+    while _floor_at(x, places) < 10 ** (digits - 1):
+        places += 1
+    while _floor_at(x, places) >= 10 ** digits:
+        places -= 1
+    text = str(_floor_at(x, places))
+    if places <= 0:
+        return text + "0" * -places
+    text = "0" * (places + 1 - len(text)) + text
+    return text[:-places] + "." + text[-places:]
 
 
 def _with_unit(text, unit):

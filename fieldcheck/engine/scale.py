@@ -68,6 +68,8 @@ def _linear_ticks(low, high):
         step = candidate
         if _ten(e, candidate) >= raw:
             break
+    if step == 10:
+        e, step = e + 1, 1
     first = int(_floor(low / _ten(e, step)))
     ticks = []
     for k in range(first, first + 15):

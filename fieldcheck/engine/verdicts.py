@@ -43,8 +43,8 @@ class Limit:
         if self.rule not in (SIMPLE, GUARDED, PROBABILITY):
             raise RuleError("limit \"" + self.id + "\" has the unknown rule \"" + self.rule + "\"", "",
                             "use simple, guarded or probability")
-        if not 0.0 <= self.guard <= 100.0:
-            raise RuleError("limit \"" + self.id + "\" has a guard outside 0 to 100 U")
+        if self.guard != 0.0 and not 0.01 <= self.guard <= 100.0:
+            raise RuleError("limit \"" + self.id + "\" has a guard that is neither 0 nor within 0.01 to 100 U")
         if not 0.5 <= self.probability < 1.0:
             raise RuleError("limit \"" + self.id + "\" wants a conformance probability outside 0.5 to 1")
         if self.at_least is not None and self.at_most is not None and value_of(self.at_least) > value_of(self.at_most):
@@ -149,7 +149,7 @@ def risk_at_acceptance_limit(guard_over_u_expanded, k=2.0):
 def probability_guard(probability, u, at_least, at_most, dof=None):
     """Guard band w at whose inner end the conformance probability is the wanted one; JCGM 106 8.3.2.
 
-    Where two limits stand so close that no value reaches it, w is half their distance: nothing is accepted.
+    Where two limits stand so close that no value reaches it, w is half their distance or more: nothing is accepted.
     """
     if u == 0.0:
         return 0.0

@@ -1,0 +1,257 @@
+"""Answers -> values: what a name in a formula stands for, for one item, one round and one row of a table.
+
+A `Lookup` notes what it was asked for, so that a verdict knows which meters took part, which corrections were made,
+and whether a reading is older than the service that should have come before it.
+"""
+
+from fieldcheck.engine import entry, events, meters, units
+from fieldcheck.engine.errors import FieldcheckError
+from fieldcheck.engine.figures import parse_decimal
+from fieldcheck.engine.formulas import Bound, MissingInput, evaluate
+from fieldcheck.engine.measured import influence
+
+CONDITIONS = {
+    "ambient": ("temperature", "ambient temperature", 0.5),
+    "humidity": ("humidity", "relative humidity", 0.03),
+    "supply_voltage": ("voltage", "supply voltage", 0.0),
+    "supply_frequency": ("frequency", "supply frequency", 0.0),
+}
+"""name -> (quantity, label, standard uncertainty in SI of an instrument not entered as a meter: PRACTICE)."""
+
+
+def rows_of(work, step):
+    """The row ids of a table or the single "" of another step; MissingInput when their number is not known."""
+    rows = step.get("rows")
+    if not rows:
+        return [""]
+    if rows.get("labels"):
+        return rows["labels"]
+    count = nameplate_value(work, rows["from"])
+    return [str(i + 1) for i in range(int(count))]
+
+
+def columns_of(step):
+    """The columns of a table; a step without a table is its own single column with the id ""."""
+    return step["columns"] if step["kind"] == "table" else [dict(step, id="")]
+
+
+def index_of(row, column):
+    """The index of one cell as it stands in events."""
+    return row + "/" + column if column else row
+
+
+def nameplate_field(work, name):
+    """The field of the procedure's nameplate list, or None."""
+    for field in work.part["nameplate"]:
+        if field["id"] == name:
+            return field
+    return None
+
+
+def nameplate_value(work, name):
+    """Value of a nameplate field in SI (or the choice's id); what unknown means is the rule's."""
+    field = nameplate_field(work, name)
+    given = work.nameplate.get(name)
+    if given is None:
+        raise MissingInput(["nameplate: " + field["label"]])
+    if given.get("unknown"):
+        unknown = field["unknown"]
+        if unknown["then"] == "not judged":
+            raise MissingInput(["nameplate: " + field["label"] + " (not marked)"])
+        given = unknown
+    if field.get("choices"):
+        return given.get("choice") or given["text"]
+    if field["quantity"] == "count":
+        return parse_decimal(given["text"])
+    number = typed(given, field["quantity"], field.get("unit"))
+    return float(number.values[0].base)
+
+
+def typed(value, quantity, unit):
+    """The Entry of a value {"text", "unit"?}; unit: what is meant when none was typed."""
+    return entry.read(value["text"], quantity, default_unit=value.get("unit") or unit)
+
+
+class Lookup:
+    """name -> value, for one round and one row ("" = whole tables).
+
+    used: list of (step id, index, round, Answer); states: the state of each meter that took part; notes: corrections
+    and assumptions in words.
+    """
+
+    def __init__(self, work, number, row=""):
+        self.work = work
+        self.number = number
+        self.row = row
+        self.used = []
+        self.states = []
+        self.notes = []
+        self._values = {}
+
+    def __call__(self, name):
+        """The value of a name; MissingInput when it has not been taken."""
+        if name in self._values:
+            return self._values[name]
+        value = self._find(name)
+        self._values[name] = value
+        return value
+
+    def _find(self, name):
+        work = self.work
+        if name.startswith("each "):
+            return self._every(name[5:])
+        if name in CONDITIONS:
+            return self._condition(name)
+        if name in work.values:
+            return self._derived(work.values[name])
+        step_id, _, column = name.partition(".")
+        if step_id in work.steps:
+            return self._of_step(work.steps[step_id], column)
+        if nameplate_field(work, name) is not None:
+            return self._plate(name)
+        raise FieldcheckError('the formula names "' + name + '", which is nothing in this procedure')
+
+    def _plate(self, name):
+        value = nameplate_value(self.work, name)
+        if self.work.nameplate[name].get("unknown"):
+            field = nameplate_field(self.work, name)
+            unknown = field["unknown"]
+            self.notes.append(field["label"] + " is not marked: " + unknown["text"] + _spaced(unknown.get("unit"))
+                              + " assumed (" + unknown.get("tag", "PRACTICE") + ")")
+        return value
+
+    def _condition(self, name):
+        quantity, label, u = CONDITIONS[name]
+        key = name.replace("supply_", "")
+        given = self.work.conditions.get(key)
+        if not given:
+            raise MissingInput([label])
+        value = float(typed(given, quantity, None).values[0].base)
+        return influence(value, u, label) if u else value
+
+    def _derived(self, value):
+        each = value.get("each")
+        if not each or self.row:
+            return evaluate(value["formula"], self)
+        result = []
+        for row in rows_of(self.work, self.work.step(each)):
+            inner = Lookup(self.work, self.number, row)
+            result.append(evaluate(value["formula"], inner))
+            self._take_over(inner)
+        return result
+
+    def _take_over(self, inner):
+        self.used += inner.used
+        self.states += inner.states
+        for note in inner.notes:
+            if note not in self.notes:
+                self.notes.append(note)
+
+    def _of_step(self, step, column):
+        kind = step["kind"]
+        if kind == "sequence":
+            return self._sequence(step, column)
+        if kind == "choice":
+            value = self._answer(step, "").value["choice"]
+            if value == "unknown":
+                raise MissingInput([step["title"] + " (not known)"])
+            return value
+        if kind == "table":
+            found = [one for one in step["columns"] if one["id"] == column]
+            if not found:
+                raise FieldcheckError('table "' + step["id"] + '" has no column "' + column + '"')
+            if self.row:
+                return self._reading(step, found[0], self.row)
+            return [self._reading(step, found[0], row) for row in rows_of(self.work, step)]
+        return self._reading(step, step, "")
+
+    def _every(self, name):
+        """The single readings behind a name, for median, maximum and the like."""
+        step = self.work.steps.get(name)
+        if step is None or step["kind"] not in ("measure", "timing"):
+            return self(name)
+        return self._reading(step, step, "", True)
+
+    def _answer(self, step, index):
+        found = self.work.newest(step["id"], self.number, index)
+        if found is None:
+            raise MissingInput([self._label(step, index)])
+        self.used.append((step["id"], index, found[0], found[1]))
+        return found[1]
+
+    def _label(self, step, index):
+        label = step["title"] + (" " + index if index else "")
+        for key in (index, ""):
+            for n in range(self.number, -1, -1):
+                answer = self.work.at(step["id"], n, key)
+                if answer is not None and answer.left:
+                    return label + " (not done: " + answer.left + ")"
+        slot = events.slot_key(step["id"], self.number, index)
+        return label + (" (two answers, undecided)" if slot in self.work.conflicts else "")
+
+    def _reading(self, step, column, row, every=False):
+        """A reading as Measured, Bound or (every) a list of Measured."""
+        index = index_of(row, column["id"] if step["kind"] == "table" else "")
+        answer = self._answer(step, index)
+        value = answer.value
+        number = readings_of(value, column["quantity"], column.get("unit"))
+        slot = step["title"] + (" " + index if index else "")
+        if step["kind"] == "timing" or column.get("timing"):
+            if value.get("function") is None and value.get("meter") is None:
+                return meters.stopwatch_value(number, slot)
+        meter = self.work.meters.get(value.get("meter") or "")
+        state = meters.meter_state(meter, answer.event.at if answer.event is not None else self.work.on)
+        if column["quantity"] not in UNMETERED:
+            self.states.append(state)
+        function = value.get("function") or column.get("meter") or ""
+        named = value.get("range") or None
+        bound = meters.bound_of(number, meter, function, named)
+        if bound is not None:
+            return Bound(bound[0], bound[1])
+        read = meters.reading_list if every else meters.reading_value
+        return read(number, meter, function, named, self._ambient(), slot, bool(column.get("two_wire")))
+
+    def _ambient(self):
+        given = self.work.conditions.get("ambient")
+        return float(typed(given, "temperature", None).values[0].base) if given else None
+
+    def _sequence(self, step, part):
+        if part == "layout":
+            return layout_of(self.work, step)["positions"]
+        value = self._answer(step, "").value
+        if part == "pulses":
+            return float(value.get("pulses") or len(value["seen"]))
+        if part == "start":
+            return value["start"]
+        if part == "end":
+            return value.get("end") or (value["seen"][-1] if value["seen"] else value["start"])
+        return value["seen"]
+
+
+UNMETERED = ("count", "ratio", "temperature difference")
+"""Quantities that a person counts or reads without a meter of the workshop."""
+
+
+def layout_of(work, step):
+    """The drum's layout: the step's own, or the one that a nameplate choice names."""
+    layout = step["layout"]
+    if layout.get("from"):
+        return layout["layouts"][nameplate_value(work, layout["from"])]
+    return layout
+
+
+def readings_of(value, quantity, unit):
+    """The Entry of an answer's value: {"text"} as typed, or {"texts": [...]} one repeat each."""
+    if value.get("texts"):
+        numbers = []
+        for text in value["texts"]:
+            read = typed({"text": text, "unit": value.get("unit")}, quantity, unit)
+            if read.kind in ("over", "under"):
+                return read
+            numbers += list(read.values)
+        return numbers
+    return typed(value, quantity, unit)
+
+
+def _spaced(unit):
+    return " " + units.symbol_text(units.unit(unit)) if unit else ""
