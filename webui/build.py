@@ -25,21 +25,23 @@ from typing import Any
 try:
     from hatchling.builders.hooks.plugin.interface import BuildHookInterface
 except ImportError:  # a checkout without hatchling can build the phone all the same
-    BuildHookInterface = object
+    BuildHookInterface = object  # type: ignore[assignment, misc]
 
 sys.path.insert(0, str(Path(__file__).resolve().parent))
 from translate import Module, TranslationError, Translator
 
-# Which module goes to which chunk: the longest name here that is the module's, or a package above it, decides.
-# The page loads "core" to start; the rest comes when it is idle or asked for.
+# Which module goes to which chunk: the longest name here that is the module's, or a package above it, decides;
+# one with a point at its end speaks only of what lies below. The page loads "core" to start; the rest comes when it
+# is idle or asked for.
 CHUNKS = {
     "__main__": "core",
     "sys": "core",
     "app": "core",
     "app.screens": "screens",
     "fieldcheck": "core",
-    "fieldcheck.engine.physics": "physics",
-    "fieldcheck.engine.physics.registry": "physics",
+    "fieldcheck.engine.physics.": "physics",
+    "fieldcheck.engine.physics.registry": "core",
+    "fieldcheck.engine.physics.function_table": "core",
 }
 ONE_EACH = {"physics"}  # each module below gets a chunk of its own: physics.windings, physics.rectifiers, ...
 STDLIB = ["math"]  # modules of Brython's standard library that ship with core
@@ -101,13 +103,13 @@ class Folder:
 
 def chunk_of(name: str) -> str:
     """The chunk that a module belongs to, by the table CHUNKS."""
-    above = [known for known in CHUNKS if name == known or name.startswith(known + ".")]
+    above = [known for known in CHUNKS if f"{name}.".startswith(known.rstrip(".") + ".") and name + "." != known]
     if not above:
         raise TranslationError(f"{name}: the table CHUNKS in webui/build.py does not say to which chunk it goes")
     nearest = max(above, key=len)
     chunk = CHUNKS[nearest]
-    if chunk in ONE_EACH and name != nearest:
-        return f"{chunk}.{name[len(nearest) + 1 :].split('.')[0]}"
+    if chunk in ONE_EACH:
+        return f"{chunk}.{name[len(nearest) :].split('.')[0]}"
     return chunk
 
 
@@ -141,6 +143,7 @@ def phone_modules(repo: Path) -> tuple[list[Module], str]:
     ]
     for module in modules[3:]:
         check_imports(module, {m.name for m in modules})
+        check_start(module, {m.name for m in modules})
     return modules, version
 
 
@@ -160,6 +163,28 @@ def check_imports(module: Module, shipped: set[str]) -> None:
                 raise TranslationError(
                     f"{module.file}:{node.lineno}: the phone has no module {'.'.join(parts)}\n"
                     f"    it has the engine, app, {', '.join(sorted([*BUILT_IN, *STDLIB]))}"
+                )
+
+
+def check_start(module: Module, shipped: set[str]) -> None:
+    """TranslationError when a module of core imports, while it starts, one whose chunk is not there yet."""
+    if chunk_of(module.name) != "core":
+        return
+    waiting: list[ast.AST] = [ast.parse(module.source, module.file)]
+    while waiting:
+        node = waiting.pop()
+        if isinstance(node, (ast.FunctionDef, ast.AsyncFunctionDef, ast.Lambda)):
+            continue  # imported when called
+        waiting.extend(ast.iter_child_nodes(node))
+        names = [alias.name for alias in node.names] if isinstance(node, ast.Import) else []
+        if isinstance(node, ast.ImportFrom):
+            above = absolute(node, module)
+            names = [above, *(f"{above}.{alias.name}" for alias in node.names)]
+        for name in names:
+            if name in shipped and chunk_of(name) != "core":
+                raise TranslationError(
+                    f"{module.file}:{node.lineno}: the start would need {name}, of the chunk {chunk_of(name)}\n"  # type: ignore[attr-defined]
+                    "    import it inside a function, after platform.loadChunk, or move it to core in CHUNKS"
                 )
 
 
@@ -225,7 +250,7 @@ def build(out: Path, repo: Path, cache: Path | None = None, base: str = "") -> M
     web_manifest = put_web_manifest(folder, webui / "manifest.webmanifest", icons)
     links = stylesheet_links(folder, styles, base) + icon_links(icons, web_manifest, base)
     number = build_number(folder, chunks["core"])
-    head = {"version": version, "build": number, "pictures": pictures}
+    head = {"version": version, "build": number, "pictures": {name: base + path for name, path in pictures.items()}}
     core = f"fieldcheckChunks.table({json.dumps(head)}, {json.dumps(table)})\n{chunks['core']}"
     scripts += [folder.put_hashed("core.js", core.encode()), boot]
     folder.put("index.html", page(webui / "index.html", links, script_tags(folder, scripts, base)).encode())
@@ -278,7 +303,7 @@ def page(template: Path, links: list[str], scripts: list[str]) -> str:
     return text
 
 
-class CustomBuildHook(BuildHookInterface):  # type: ignore[misc, valid-type]
+class CustomBuildHook(BuildHookInterface):  # type: ignore[type-arg]
     """Puts the phone into the wheel; an editable install only gets it built in the checkout."""
 
     def initialize(self, version: str, build_data: dict[str, Any]) -> None:

@@ -34,7 +34,8 @@ def run_in_chromium(
         (site / "parity.js").write_text(runner_chunk(runner_module, REPO, folder), encoding="utf-8")
         (site / "boot.js").write_text(BOOT)
         names = [next((phone / "a").glob(f"{name}.{'[0-9a-f]' * 12}.js")).name for name in scripts(phone)]
-        tags = [f'<script defer src="{path}"></script>' for path in [*(f"a/{n}" for n in names), "parity.js", "boot.js"]]
+        paths = [*(f"a/{name}" for name in names), "parity.js", "boot.js"]
+        tags = [f'<script defer src="{path}"></script>' for path in paths]
         (site / "index.html").write_text(PAGE.format("".join(tags)))
         with serving(site) as (address, _):
             return in_page(browser, address, cases)

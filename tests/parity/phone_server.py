@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import functools
 import http.server
+import sys
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -49,12 +50,20 @@ class Handler(http.server.SimpleHTTPRequestHandler):
         """Silent."""
 
 
+class Server(http.server.ThreadingHTTPServer):
+    """A page that closes in the middle of an answer is nothing to talk about."""
+
+    def handle_error(self, request: Any, client_address: Any) -> None:
+        if not isinstance(sys.exc_info()[1], ConnectionError):
+            super().handle_error(request, client_address)
+
+
 @contextmanager
 def serving(folder: Path) -> Iterator[tuple[str, list[str]]]:
     """Serves `folder`; gives its address and the growing list of paths that were asked for."""
     asked: list[str] = []
     handler = functools.partial(Handler, directory=str(folder), asked=asked)
-    with http.server.ThreadingHTTPServer(("127.0.0.1", 0), handler) as server:
+    with Server(("127.0.0.1", 0), handler) as server:
         threading.Thread(target=server.serve_forever, daemon=True).start()
         yield f"http://127.0.0.1:{server.server_port}", asked
         server.shutdown()

@@ -37,7 +37,7 @@ def test_the_start_breaks_no_policy_and_asks_for_no_python(context: BrowserConte
         page.goto(address, wait_until="load")
         assert page.inner_text("h1") == "small phone"
         # The rest comes by itself once the page is idle.
-        until(page, "performance.getEntriesByType('resource').filter(e => /screens|physics/.test(e.name)).length == 3")
+        until(page, "performance.getEntriesByType('resource').filter(e => /screens|physics/.test(e.name)).length == 2")
         assert said == []
         assert page.locator("#failed").count() == 0
         assert [path for path in asked if ".py" in path or "?" in path] == []
@@ -51,7 +51,7 @@ def test_the_real_phone_breaks_no_policy_and_asks_for_no_python(context: Browser
         page.on("console", lambda message: said.append(message.text))
         page.goto(address, wait_until="load")
         until(page, "performance.getEntriesByName('fieldcheck started').length")
-        until(page, "fieldcheckChunks.has('fieldcheck.engine.physics')")
+        until(page, "fieldcheckChunks.has('fieldcheck.engine.physics.windings')")
     assert [text for text in said if "Content Security Policy" in text] == []
     assert [path for path in asked if ".py" in path] == []
 

@@ -71,8 +71,9 @@ def test_the_page_holds_nothing_inline_and_every_file_has_its_integrity(small_ph
 
 def test_chunks_follow_the_table(small_phone: Path) -> None:
     chunks = json.loads((small_phone / "manifest.json").read_text())["chunks"]
-    assert set(chunks) == {"core", "physics", "physics.windings", "screens"}
+    assert set(chunks) == {"core", "physics.windings", "screens"}
     core = next((small_phone / "a").glob("core.*.js")).read_text()
+    assert '"fieldcheck.engine.physics.registry": {' in core and '"fieldcheck.engine.physics": {' in core
     assert '"app.words": {' in core and '"app.screens.one": {' not in core
     assert chunks["screens"]["url"] in core and chunks["physics.windings"]["integrity"] in core
 
@@ -121,6 +122,23 @@ def test_an_import_that_the_phone_cannot_carry_out_is_refused(own_repo: Path, li
         build.build(own_repo / "webui" / "dist", own_repo)
 
 
+@pytest.mark.parametrize(
+    ("text", "named"),
+    [
+        ("from .screens import one", "app.screens"),
+        ("if True:\n    import app.screens.one", "app.screens.one"),
+        ("from fieldcheck.engine.physics import windings", r"fieldcheck\.engine\.physics\.windings"),
+    ],
+)
+def test_core_may_not_need_another_chunk_to_start(own_repo: Path, text: str, named: str) -> None:
+    bad = own_repo / "webui" / "app" / "bad.py"
+    bad.write_text(text + "\n")
+    with pytest.raises(TranslationError, match=rf"app/bad\.py:\d: the start would need {named}, of the chunk"):
+        build.build(own_repo / "webui" / "dist", own_repo)
+    bad.write_text("def later():\n" + "\n".join("    " + line for line in text.split("\n")) + "\n")
+    assert build.build(own_repo / "webui" / "dist", own_repo).translated > 0
+
+
 def test_python_that_brython_refuses_names_its_file(tmp_path: Path) -> None:
     with translate.Translator(tmp_path) as translator, pytest.raises(TranslationError, match=r"^app/bad\.py: "):
         translator.function(Module("app.bad", "app/bad.py", "def f(:\n"))
@@ -143,7 +161,8 @@ def test_another_brython_is_refused(monkeypatch: pytest.MonkeyPatch) -> None:
 
 
 def test_docstrings_go_and_lines_stay() -> None:
-    source = '"""Doc\nof it."""\nA = "µ"\n\n\ndef f():\n    """Only this."""\n\n\ndef g(x):\n    "two"  # why\n    return x\n'
+    source = '"""Doc\nof it."""\nA = "µ"\n\n\ndef f():\n    """Only this."""\n\n\n'
+    source += 'def g(x):\n    "two"  # why\n    return x\n'
     bare = translate.without_docstrings(source)
     assert "Doc" not in bare and "Only" not in bare and "two" not in bare
     assert bare.count("\n") == source.count("\n")
@@ -160,7 +179,7 @@ def test_no_shipped_file_names_this_machine(small_phone: Path, small_repo: Path)
 
 def test_a_template_without_its_places_is_refused(own_repo: Path) -> None:
     (own_repo / "webui" / "index.html").write_text("<!doctype html>{{css}}")
-    with pytest.raises(TranslationError, match="must hold {{scripts}} once, not 0 times"):
+    with pytest.raises(TranslationError, match=r"must hold \{\{scripts\}\} once, not 0 times"):
         build.build(own_repo / "webui" / "dist", own_repo)
 
 
