@@ -23,7 +23,7 @@ _TWO_PI = 6.283185307179586
 _LARGEST = 1.7976931348623157e308
 _NORMAL_FROM = 1000.0     # degrees of freedom above which Hill's expansion about the normal law is right to 14 digits
 _CACHE_AT_MOST = 500
-_cache = {}
+_cache = {}          # type: dict[str, float]
 
 
 def _refuse(what, mend):
