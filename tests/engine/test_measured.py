@@ -28,7 +28,7 @@ FUNCTIONS = {
 
 
 def ours(dofs=(None,) * 6):
-    return [m.influence(x, u, "x%d" % i, dof) for i, ((x, u), dof) in enumerate(zip(INPUTS, dofs, strict=True))]
+    return [m.influence(x, u, f"x{i}", dof) for i, ((x, u), dof) in enumerate(zip(INPUTS, dofs, strict=True))]
 
 
 @pytest.mark.parametrize("name", FUNCTIONS)
@@ -82,9 +82,11 @@ def test_the_same_name_in_two_values_cancels_in_their_ratio():
 
 def test_division_by_zero_and_roots_of_negatives_are_refused():
     zero = m.influence(0.0, 1.0, "z")
-    for call in (lambda: 1.0 / zero, lambda: zero / 0.0, lambda: zero / zero, lambda: m.sqrt(zero), lambda: m.sqrt(-1.0),
-                 lambda: m.acos(m.influence(1.0, 0.1, "x")), lambda: m.influence(1.0, -0.1, "x"),
-                 lambda: m.influence(1.0, float("nan"), "x"), lambda: m.influence(1.0, 0.1, "x", 0), lambda: m.mean([])):
+    for call in (
+        lambda: 1.0 / zero, lambda: zero / 0.0, lambda: zero / zero, lambda: m.sqrt(zero), lambda: m.sqrt(-1.0),
+        lambda: m.acos(m.influence(1.0, 0.1, "x")), lambda: m.influence(1.0, -0.1, "x"), lambda: m.mean([]),
+        lambda: m.influence(1.0, float("nan"), "x"), lambda: m.influence(1.0, 0.1, "x", 0),
+    ):
         with pytest.raises(OutOfRange):
             call()
 

@@ -210,7 +210,7 @@ def test_chain_a_four_wire_with_reversal():
     r20 = r * (234.5 + 20.0) / (234.5 + m.influence(23.4, 0.5 / math.sqrt(3.0), "thermometer"))
     assert r20.value == near(2.275599069406747, 1e-12)
     assert m.expanded(r20, "k = 2").u == near(0.004228102656474552, 1e-12)
-    assert m.expanded(r20, "k = 2").U == near(0.008456205312949104, 1e-12)
+    assert near(0.008456205312949104, 1e-12) == m.expanded(r20, "k = 2").U
 
 
 def test_chain_c_pull_in_voltage():
@@ -227,9 +227,9 @@ def test_chain_c_pull_in_voltage():
     assert got.parts[m.REPEATS + "reading pull_in"] == near(0.02204540768504869, 1e-12)
     assert wide.u == near(0.035551197185655185, 1e-12)
     assert wide.dof == near(27.052311120588254, 1e-12)
-    assert wide.U == near(0.07294503128293532, 1e-12)
+    assert near(0.07294503128293532, 1e-12) == wide.U
     assert stats.t.ppf(0.975, wide.dof) * wide.u == near(0.07293843179768968, 1e-11)
-    assert wide.U == pytest.approx(0.073, abs=5e-4)                       # as checks 8.1 uses it
+    assert pytest.approx(0.073, abs=5e-4) == wide.U                       # as checks 8.1 uses it
     single = read("4.044 V", "voltage", meter, "AC voltage", "pull_in")
     assert m.combined(single) == near(0.02789063680401244, 1e-12)
 
