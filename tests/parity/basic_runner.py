@@ -1,7 +1,8 @@
-"""A small runner: whole numbers, floats by their bits, frozen values, errors. Runs in every runtime."""
+"""A small runner: whole numbers, floats by their bits, a few engine functions, errors. Runs in every runtime."""
 
 import math
 
+from fieldcheck.engine import elementary, figures
 from fieldcheck.engine.errors import EntryError
 from fieldcheck.engine.frozen import frozen
 
@@ -62,6 +63,17 @@ def run(case):
         return repr(Taken(args[0], unit=args[1]).replace(decimals=3)) + str(Taken(args[0]) == Taken(args[0], ""))
     if op == "surplus":
         return repr(Taken(1, unknown=2))
+    if op == "exp":
+        return to_hex16(elementary.exp(from_hex16(args[0])))
+    if op == "log":
+        return to_hex16(elementary.log(from_hex16(args[0])))
+    if op == "fixed":
+        return figures.fixed(from_hex16(args[0]), args[1])
+    if op == "round12":
+        return to_hex16(figures.round12(from_hex16(args[0])))
+    if op == "import":
+        __import__(args[0])
+        return args[0]
     if op == "echo":
         return args[0]
     raise EntryError("no such operation", "case", "use another")

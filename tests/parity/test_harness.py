@@ -12,13 +12,16 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import basic_runner
+import build
 import pytest
 from chromium import run_in_chromium
 from parity_answers import answers
-from v8 import run_in_v8
+from v8 import REPO, run_in_v8
 
 if TYPE_CHECKING:
     from playwright.sync_api import Browser
+
+ENGINE = REPO / "fieldcheck" / "engine"
 
 
 def hex16(x: float) -> str:
@@ -34,6 +37,11 @@ def made_cases() -> list[Any]:
     cases += [["arithmetic", [hex16(x), hex16(y)]] for x, y in zip(floats[::2], floats[1::2], strict=True)]
     cases += [["root", [hex16(abs(x))]] for x in floats]
     cases += [["repr", [hex16(x)]] for x in [*floats, 5e-324, 2.2250738585072014e-308, -0.0, 1.5e16, 1e-7]]
+    cases += [["exp", [hex16(rng.uniform(-700, 700))]] for _ in range(60)]
+    cases += [["log", [hex16(abs(x))]] for x in floats]
+    cases += [["fixed", [hex16(rng.randrange(10**6) / 10 ** (n + 1)), n]] for n in (1, 2, 3) for _ in range(40)]
+    cases += [["round12", [hex16(x)]] for x in floats]
+    cases += [["import", [module.name]] for module in build.modules_below(ENGINE, "fieldcheck.engine", "engine")]
     cases += [["frozen", [7, "ohm"]], ["surplus", []], ["unknown", []]]
     cases += [["echo", ["Ω µ − \u202f \U0001f600 __proto__ \" \\ \n"]]]
     return cases
@@ -53,6 +61,10 @@ def test_the_reference_itself_is_right(expected: list[str]) -> None:
         if op == "arithmetic":
             x, y = (struct.unpack(">d", bytes.fromhex(a))[0] for a in args)
             assert text == " ".join(hex16(z) for z in (x + y, x - y, x * y, x / y))
+        if op == "fixed":
+            assert text == f"{struct.unpack('>d', bytes.fromhex(args[0]))[0]:.{args[1]}f}"
+        if op == "import":
+            assert text == args[0]
         if op == "repr":
             assert text == repr(struct.unpack(">d", bytes.fromhex(args[0]))[0])
     assert "E:TypeError:Taken: unexpected ['unknown']" in expected
