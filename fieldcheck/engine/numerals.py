@@ -51,18 +51,19 @@ class Piece:
 def quoted(text, most=40):
     """The text in double quotes, cut to so many characters, safe to print: never half of a surrogate pair."""
     parts = []
-    high = ""
+    high = 0
     for ch in text:
         code = ord(ch)
         if high:
-            parts.append(high + ch if 0xDC00 <= code <= 0xDFFF else "\ufffd")
-            joined, high = 0xDC00 <= code <= 0xDFFF, ""
+            joined = 0xDC00 <= code <= 0xDFFF
+            parts.append(chr(0x10000 + (high - 0xD800) * 0x400 + code - 0xDC00) if joined else "\ufffd")
+            high = 0
             if joined:
                 continue
         if len(parts) >= most:
             return '"' + "".join(parts) + '…"'
         if 0xD800 <= code <= 0xDBFF:
-            high = ch
+            high = code
         elif code < 32 or code == 127 or 0xDC00 <= code <= 0xDFFF:
             parts.append(" " if code in (9, 10, 13) else "\ufffd")
         else:
