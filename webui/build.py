@@ -179,8 +179,9 @@ def build(out: Path, repo: Path, cache: Path | None = None, base: str = "") -> M
         chunks = chunk_texts(modules, translator)
         runtime = translator.runtime()
         translated = translator.translated
-    if out.exists():
-        shutil.rmtree(out)
+    if out.exists() and any(out.iterdir()) and not (out / "manifest.json").exists():
+        raise TranslationError(f"{out} holds something else than a phone: name another folder, or empty it yourself")
+    shutil.rmtree(out, ignore_errors=True)
     folder = Folder(out)
     webui = repo / "webui"
     styles = [folder.put_hashed(p.name, p.read_bytes()) for p in sorted((webui / "css").glob("*.css"))]

@@ -185,6 +185,14 @@ def test_a_template_without_its_places_is_refused(own_repo: Path) -> None:
         build.build(own_repo / "webui" / "dist", own_repo)
 
 
+def test_a_folder_of_something_else_is_not_emptied(own_repo: Path, tmp_path: Path) -> None:
+    (tmp_path / "letters").mkdir()
+    (tmp_path / "letters" / "one.txt").write_text("keep")
+    with pytest.raises(TranslationError, match="holds something else than a phone"):
+        build.build(tmp_path / "letters", own_repo)
+    assert (tmp_path / "letters" / "one.txt").read_text() == "keep"
+
+
 def test_the_hook_puts_the_phone_into_the_wheel(own_repo: Path) -> None:
     """hatchling's build_data["force_include"] maps a path on disk to a path in the wheel.
 
