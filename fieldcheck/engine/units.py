@@ -140,6 +140,8 @@ def parse_unit(text, quantity_name):
     for key in keys:
         if word == UNITS["u:" + key].symbol or word == key:
             return UNITS["u:" + key]
+    if word == of.base_unit:  # where it is not offered to people, rules and functions may still say it
+        return UNITS["u:" + word]
     for name, spelling, key in ALIASES:
         if name == quantity_name and word == spelling:
             return UNITS["u:" + key]

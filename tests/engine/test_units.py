@@ -92,6 +92,7 @@ def test_every_quantity_offers_its_base_unit():
         assert (of.base_unit in of.units) != (name in elsewhere)
         base = units.unit(of.base_unit)
         assert (base.num, base.den, base.offset_num) == (1, 1, 0)
+        assert units.parse_unit(of.base_unit, name) == base
 
 
 @pytest.mark.parametrize(("typed", "name", "symbol"), [
