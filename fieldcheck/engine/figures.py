@@ -116,8 +116,8 @@ def significant(x, n):
 def round12(x):
     """x to 12 significant digits, as the float nearest to that decimal: both sides of a comparison go through it."""
     x = _finite(x)
-    if x == 0:
-        return 0.0
+    if len(repr(x)) <= 13:           # point or exponent counted: 12 digits at most, so x is that float already
+        return x + 0.0
     d, e = _leading(x, 12)
     value = float(str(d) + "e" + str(e - 11))
     return -value if x < 0 else value
