@@ -152,17 +152,17 @@ def node_digest(left, right):
 
 def root(leaf_texts):
     """Generator: the RFC 6962 root over leaves in the order given; of none, the hash of nothing."""
-    peaks = []                          # (number of leaves, root) of full subtrees, largest first
+    peaks = [(0, "")]                   # (number of leaves, root) of full subtrees, largest first, behind a stop
     for text in leaf_texts:
         digest = yield ("text", "\x00" + text)
         yield from _grow(peaks, digest)
-    result = yield from root_of_peaks([digest for leaves, digest in peaks])
+    result = yield from root_of_peaks([digest for leaves, digest in peaks[1:]])
     return result
 
 
 def _grow(peaks, digest):
     leaves = 1
-    while peaks and peaks[-1][0] == leaves:
+    while peaks[-1][0] == leaves:
         left = peaks.pop()
         digest = yield ("hex", "01" + left[1] + digest)
         leaves = leaves + leaves

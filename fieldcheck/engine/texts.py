@@ -49,12 +49,12 @@ def write(value):
     Refuses (EventError) floats, integers beyond 2^53 - 1, keys that are not ASCII, other kinds of value,
     more than 32 levels, half of a surrogate pair and a text of more than 64 KiB.
     """
-    out = []
+    out = [""]
     _put(value, out, 0, "")
     text = "".join(out)
     found = [control for control in CONTROLS if control in text]
     if found:                           # rare: only then is every text looked at for control characters
-        out = []
+        out = [""]
         _put(value, out, 0, found)
         text = "".join(out)
     length = size(text)
@@ -263,12 +263,12 @@ def _place(before):
 
 def _parse(between, texts, blanks, raw):
     """The value of a text that was cut. raw: the texts still escaped, only to say where a fault lies."""
-    stack = []                          # (container, key, is it an object) of what is open outside the innermost
-    inner = None                        # the innermost open list or object
+    inner = _nothing()                  # the innermost open list or object
     in_object = False
     key = ""
+    stack = [(inner, key, in_object)]   # what is open outside it
     want = VALUE
-    value = None
+    value = _nothing()
     last = len(texts)
     for number, segment in enumerate(between):
         if want == COLON and segment == ":":
@@ -288,7 +288,7 @@ def _parse(between, texts, blanks, raw):
                     want = KEY if in_object else VALUE
                     continue
                 if want <= VALUE_OR_END and (mark == "{" or mark == "["):
-                    if len(stack) >= DEPTH:
+                    if len(stack) > DEPTH:
                         raise EventError("more than " + str(DEPTH) + " levels", _at(between, raw, number, at))
                     stack.append((inner, key, in_object))
                     in_object = mark == "{"
@@ -339,6 +339,10 @@ def _parse(between, texts, blanks, raw):
         where = _at(between, raw, last, len(between[last]) + 1)
         raise EventError("the text ends where " + WANTED[want] + " is expected", where)
     return value
+
+
+def _nothing():
+    return None
 
 
 def _scalar(segment, at, between, raw, number):

@@ -22,6 +22,9 @@ migrations = Migrations("fieldcheck journal")
 class JournalError(FieldcheckError):
     """The journal's folder or file is not what it should be."""
 
+    def __init__(self, what: str, where: str = "", mend: str = "") -> None:
+        FieldcheckError.__init__(self, what, where, mend)
+
 
 def connect(path: Path) -> Database:
     """A connection for the thread that asks: every commit is on disk before it returns (WAL, synchronous=FULL).

@@ -71,7 +71,7 @@ class Refused(EventError):
     """
 
     def __init__(self, code: str, ack: int, what: str, where: str = "", mend: str = "") -> None:
-        super().__init__(what, where, mend)
+        EventError.__init__(self, what, where, mend)
         self.code = code
         self.ack = ack
 
