@@ -56,6 +56,11 @@ LIST_FUNCTIONS = {
     "count": lambda values: float(len(values)) if isinstance(values, list) else 1.0,
 }
 
+MATHS = {"sqrt": measured.sqrt, "exp": measured.exp, "log": measured.log, "log10": measured.log10,
+         "sin": measured.sin, "cos": measured.cos, "atan": measured.atan, "asin": measured.asin,
+         "acos": measured.acos, "abs": abs}
+"""Functions of one value; all but sqrt and abs take and give pure numbers."""
+
 
 def names_in(tree):
     """The names that a tree mentions, each once, in order."""
@@ -229,12 +234,18 @@ def _turned(kind, a, side):
 
 def _call(tree, lookup):
     name = tree[1]
+    if name in LIST_FUNCTIONS and len(tree[2]) == 1 and tree[2][0][0] == "name":
+        return LIST_FUNCTIONS[name](lookup("each " + tree[2][0][1]))
     values = [_value(one, lookup) for one in tree[2]]
     named = {}
     for key in tree[3]:
         named[key] = _value(tree[3][key], lookup)
     if name in LIST_FUNCTIONS:
         return LIST_FUNCTIONS[name](values if len(values) > 1 else values[0])
+    if name in MATHS:
+        if isinstance(values[0], (list, Bound)):
+            raise OutOfRange("a column, or a reading out of the meter's range, cannot enter " + name)
+        return MATHS[name](values[0])
     function = registry.REGISTRY.get(name)
     if function is None:
         raise FieldcheckError("there is no function " + name)

@@ -225,7 +225,9 @@ class Lookup:
             return value["start"]
         if part == "end":
             return value.get("end") or (value["seen"][-1] if value["seen"] else value["start"])
-        return value["seen"]
+        if part == "seen":
+            return value["seen"]
+        return {"layout": layout_of(self.work, step)["positions"], "start": value["start"], "seen": value["seen"]}
 
 
 UNMETERED = ("count", "ratio", "temperature difference")
