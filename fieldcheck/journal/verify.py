@@ -161,7 +161,8 @@ def _tree(connection: sqlite3.Connection, leaves: list[str]) -> Iterator[str]:
     fresh = _nodes(leaves[:size])
     wrong = sum(1 for place, digest in stored.items() if fresh.get(place) != digest) + len(fresh.keys() - stored.keys())
     if wrong:
-        yield f"The stored Merkle tree differs from the events in {wrong} nodes."
+        nodes = "1 node" if wrong == 1 else f"{wrong} nodes"
+        yield f"The stored Merkle tree differs from the events in {nodes}."
 
 
 def _nodes(leaves: list[str]) -> dict[tuple[int, int], str]:
