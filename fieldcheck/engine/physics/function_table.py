@@ -102,6 +102,8 @@ TABLE = {
          "rectified mean of a phase-cut sine"),
         ("phase_cut_correction", "angle:angle", "ratio", "FACT", "checks 5.2",
          "true rms over what an average-responding meter shows"),
+        ("half_wave_shown_by_average_meter", "v_peak:voltage", "voltage", "CALC", "checks 5.2",
+         "what an average-responding, AC-coupled meter shows of a half-wave"),
     ),
     "breakers": (
         ("trip_time_cold", "i:current, i_limit:current, tau:time", "time", "READ-2", RELAYS, "time to trip from cold"),

@@ -4,7 +4,7 @@ Volts, amperes, ohms, radians. Source: checks 5.2 (closed forms, FACT) and 5.3 (
 """
 
 from fieldcheck.engine.errors import OutOfRange
-from fieldcheck.engine.measured import cos, sin, sqrt, value_of
+from fieldcheck.engine.measured import asin, cos, sin, sqrt, value_of
 
 PI = 3.141592653589793
 SINE_FORM_FACTOR = 1.1107207345395915  # pi/(2 sqrt 2): what an average-responding meter is scaled by
@@ -49,3 +49,14 @@ def phase_cut_average(v_peak, angle):
 def phase_cut_correction(angle):
     """True rms over what an average-responding, DC-coupled meter shows of a phase-cut sine (checks 5.2)."""
     return phase_cut_rms(1.0, angle) / (SINE_FORM_FACTOR * phase_cut_average(1.0, angle))
+
+
+def half_wave_shown_by_average_meter(v_peak):
+    """What an average-responding meter coupled through a capacitor shows of a half-wave rectified sine (checks 5.2).
+
+    Form factor of the sine times the mean distance of the wave from its own mean (peak/pi), in closed form.
+    A published table prints 0.764 for a peak of 2 by mistake; it is 0.779376 (checks T4).
+    """
+    level = 1.0 / PI
+    angle = asin(level)
+    return v_peak * (SINE_FORM_FACTOR / PI * (2.0 * cos(angle) - level * (PI - 2.0 * angle)))

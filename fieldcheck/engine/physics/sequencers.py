@@ -137,6 +137,8 @@ def more_pulses(layout, start, seen):
     if run.resolved:
         return MorePulses(0, ())
     ends = _ends(shown, start, seen, candidates)
+    if any([ends[k] in ends[:k] for k in range(len(ends))]):
+        return MorePulses(None, ())  # from one position they go on alike, and neither is ever ruled out
     for count in range(1, 2 * len(shown) + 1):
         shows = [tuple([shown[(end + k) % len(shown)] for k in range(1, count + 1)]) for end in ends]
         if all([explain(shown, start, tuple(seen) + added).resolved for added in shows]):
