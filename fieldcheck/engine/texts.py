@@ -38,7 +38,9 @@ def size(text):
     if text.isascii():
         return len(text)
     try:
-        return len(text.encode("utf-8"))
+        text.encode("utf-8")
+        # Where the browser lacks TextEncoder, Brython's strict form counts a surrogate pair as six bytes.
+        return len(text.encode("utf-8", "surrogatepass"))
     except UnicodeEncodeError:
         raise EventError("half of a surrogate pair cannot be written", "", "type the character again") from None
 
