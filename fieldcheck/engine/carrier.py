@@ -136,6 +136,7 @@ def linear(a, by_a, b, by_b, value):
 def influence(value, u, name, dof=None, family=None):
     """One input quantity: `value` with standard uncertainty u >= 0 under the influence `name`.
 
+    A name that a person typed needs a prefix of the house: names are dict keys, and a few texts are none on the phone.
     dof: degrees of freedom >= 1, None = infinite.  family: see measured.py.
     Raises OutOfRange for a value or u that is not finite, u < 0, or dof < 1.
     """

@@ -176,7 +176,7 @@ def _limit_text(shown, unit):
         return shown.at_least + " to " + _with_unit(shown.at_most, unit)
     if shown.at_most:
         return "at most " + _with_unit(shown.at_most, unit)
-    return "at least " + _with_unit(shown.at_least, unit)
+    return "at least " + _with_unit(shown.at_least, unit) if shown.at_least else ""
 
 
 def _guard_text(verdict, limit, shown, unit):
@@ -190,7 +190,7 @@ def _guard_text(verdict, limit, shown, unit):
 
 
 def _coverage_text(verdict):
-    if verdict.U == 0.0:
+    if verdict.U == 0.0 or verdict.k == 0.0:
         return ""
     dof = "infinite" if verdict.dof is None or verdict.dof > 1e7 else str(int(verdict.dof))
     k = figures.significant(verdict.k, 3)

@@ -56,9 +56,10 @@ class Limit:
 class Verdict:
     """limit: id.  statement: one of STATEMENTS.  reason: one sentence.  value: float SI or None; bound: "", ">" or
     "<".  at_least, at_most: float or None.  rule: the one that was used.  guard: w, SI.  u, dof (None = infinite),
-    k, U, coverage.  accept_low, accept_high: acceptance limits, None on a side without limit.  probability: of
-    conformance, None where not computed; risk: of a wrong accept, 1 - probability, when the statement accepts.
-    notes: tuple of sentences (simple acceptance without a meter, overdue meter, enlarged guard)."""
+    k (0.0: without a known meter no coverage is claimed), U, coverage.  accept_low, accept_high: acceptance limits,
+    None on a side without limit.  probability: of conformance, None where not computed; risk: of a wrong accept,
+    1 - probability, when the statement accepts.  notes: tuple of sentences (simple acceptance without a meter,
+    overdue meter)."""
 
 
 def not_judged(limit, reason, value=None, bound="", notes=()):
@@ -228,13 +229,15 @@ def judge(value, limit, meters=(), bound="", correlations=None):
     wide = _uncertainty(value, limit, correlations)
     guard = guard_band(limit, rule, wide, at_least, at_most)
     statement = statement_of(y, at_least, at_most, guard)
-    sure = conformance_probability(y, wide.u, at_least, at_most, wide.dof)
+    known = NO_METER not in meters      # the resolution alone is no uncertainty to claim anything from
+    sure = conformance_probability(y, wide.u, at_least, at_most, wide.dof) if known else None
     reason = _reason(statement, y, at_least, at_most)
     if limit.safety and statement in (CONDITIONAL_PASS, CONDITIONAL_FAIL):
         statement = CONDITIONAL_FAIL
         reason = reason + ": " + DO_NOT_ENERGISE
-    risk = 1.0 - sure if statement in (PASS, CONDITIONAL_PASS) else None
-    return Verdict(limit.id, statement, reason, y, "", at_least, at_most, rule, guard, wide.u, wide.dof, wide.k,
+    risk = 1.0 - sure if known and statement in (PASS, CONDITIONAL_PASS) else None
+    k = wide.k if known else 0.0
+    return Verdict(limit.id, statement, reason, y, "", at_least, at_most, rule, guard, wide.u, wide.dof, k,
                    wide.U, limit.coverage, None if at_least is None else at_least + guard,
                    None if at_most is None else at_most - guard, sure, risk, notes)
 
@@ -310,7 +313,8 @@ def _first_places(verdict, convert):
     width = convert(verdict.U) - convert(0.0)
     if width > 0.0:
         text = figures.value_with_uncertainty(convert(verdict.value), width)[1]
-        return len(text.partition(".")[2])
+        places = len(text.partition(".")[2])
+        return places if verdict.k > 0.0 else max(0, places - 1)
     text = figures.decimal_text(figures.round12(convert(verdict.value))).partition(".")[2]
     return min(len(text), 6) if text != "0" else 0
 
@@ -324,7 +328,8 @@ def _trimmed(text):
 
 @frozen("value", "U", "guard", "at_least", "at_most", "places")
 class Printed:
-    """Texts in the display unit: value, U ("" when 0), guard, at_least and at_most ("" when absent); places."""
+    """Texts in the display unit: value, U ("" when 0 or not claimed), guard, at_least and at_most ("" when absent);
+    places: decimal places of value, U and guard."""
 
 
 def printed(verdict, convert=_same):
@@ -332,29 +337,42 @@ def printed(verdict, convert=_same):
 
     convert: SI float -> display unit, increasing (units.from_base with the unit bound); differences are converted
     as convert(d) - convert(0).  Starts from U to two digits and adds places until the printed figures, compared as
-    exact decimals, say what was judged.
+    exact decimals, say what was judged.  Where the guard band is so narrow that the twelve digits of the comparison
+    decide (some 1e-10 of the value), the guard's last printed digit gives way by one to three.
     """
     if verdict.value is None:
         return Printed("", "", "", _limit_text(verdict.at_least, convert), _limit_text(verdict.at_most, convert), 0)
-    round12 = figures.round12
-    zero = convert(0.0)
-    y = convert(round12(verdict.value))
-    w = convert(verdict.guard) - zero if verdict.guard else 0.0
-    edges = [None if e is None else convert(round12(e)) for e in (verdict.at_least, verdict.at_most)]
     wanted = statement_of(verdict.value, verdict.at_least, verdict.at_most, verdict.guard)
-    places = _first_places(verdict, convert)
-    for more in range(18):
-        wide = _width_text(convert(verdict.U) - zero, places + more, more == 0)
-        texts = [figures.fixed(y, places + more),
-                 wide if verdict.guard == verdict.U else _width_text(w, places + more, False)]
-        texts += [None if e is None else figures.fixed(e, places + more) for e in edges]
-        whole = [None if t is None else _scaled_int(t, places + more) for t in texts]
-        if verdict.bound or (_statement_at(whole[0], whole[2], whole[3], whole[1]) == wanted
-                             and (whole[1] > 0) == (w > 0.0)):
-            break
-    return Printed(texts[0], wide if verdict.U > 0.0 else "", texts[1] if w > 0.0 else "",
-                   "" if texts[2] is None else _trimmed(texts[2]), "" if texts[3] is None else _trimmed(texts[3]),
-                   places + more)
+    first = _first_places(verdict, convert)
+    for nudge in (0, 1, -1, 2, -2, 3, -3):
+        for more in range(14):
+            shown, whole = _at_places(verdict, convert, first + more, more == 0, nudge)
+            if verdict.bound or (_statement_at(whole[0], whole[1], whole[2], whole[3]) == wanted
+                                 and (whole[3] > 0) == (verdict.guard > 0.0)):
+                return shown
+    return shown
+
+
+def _at_places(verdict, convert, places, by_policy, nudge):
+    """(Printed, [value, at_least, at_most, guard] as whole numbers of the last place)."""
+    zero = convert(0.0)
+    wide = _width_text(convert(verdict.U) - zero, places, by_policy)
+    guard = wide if verdict.guard == verdict.U else _width_text(convert(verdict.guard) - zero, places, False)
+    if nudge:
+        guard = _placed(_scaled_int(guard, places) + nudge, places)
+    texts = [None if e is None else figures.fixed(convert(figures.round12(e)), places)
+             for e in (verdict.value, verdict.at_least, verdict.at_most)]
+    whole = [None if t is None else _scaled_int(t, places) for t in texts] + [_scaled_int(guard, places)]
+    low, high = ["" if t is None else _trimmed(t) for t in texts[1:]]
+    claimed = verdict.U > 0.0 and verdict.k > 0.0
+    return Printed(texts[0], wide if claimed else "", guard if verdict.guard > 0.0 else "", low, high, places), whole
+
+
+def _placed(whole, places):
+    """A whole number >= 0 of the last place as text."""
+    text = str(max(0, whole))
+    text = "0" * (places + 1 - len(text)) + text
+    return text[:-places] + "." + text[-places:] if places else text
 
 
 def _width_text(width, places, by_policy):

@@ -27,9 +27,11 @@ def test_a_missing_reading_is_not_judged_and_says_so():
 
 
 def test_without_a_known_meter_the_value_is_judged_by_simple_acceptance_and_says_so():
-    got = judge(value(0.99, 0.1), Limit("x", None, 1.0), ("no meter",))
+    got = judge(value(0.99, 0.01 / 12.0**0.5), Limit("x", None, 1.0), ("no meter",))
     assert (got.statement, got.rule, got.guard) == ("pass", "simple", 0.0)
     assert got.notes == ("read without a known meter: simple acceptance, no guard band",)
+    assert (got.probability, got.risk, got.k) == (None, None, 0.0)
+    assert (printed(got).value, printed(got).U, printed(got).guard) == ("0.990", "", "")
 
 
 @pytest.mark.parametrize("state", ["no meter", "unknown", "overdue", "unchecked"])
