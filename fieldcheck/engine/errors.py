@@ -20,7 +20,10 @@ class FieldcheckError(Exception):
 
 
 class EntryError(FieldcheckError):
-    """What was typed is not a value that is allowed here."""
+    """What was typed is not a value that is allowed here.  choices: texts to pick from, where it can be read in two
+    ways."""
+
+    choices = ()
 
 
 class UnitError(FieldcheckError):

@@ -4,19 +4,23 @@ A `Lookup` notes what it was asked for, so that a verdict knows which meters too
 and whether a reading is older than the service that should have come before it.
 """
 
+import math
+
 from fieldcheck.engine import entry, events, meters, units
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.figures import parse_decimal
 from fieldcheck.engine.formulas import Bound, MissingInput, evaluate
 from fieldcheck.engine.measured import influence
 
+ROOT3 = math.sqrt(3.0)
+
 CONDITIONS = {
     "ambient": ("temperature", "ambient temperature", 0.5),
-    "humidity": ("humidity", "relative humidity", 0.03),
+    "humidity": ("humidity", "relative humidity", 0.05),
     "supply_voltage": ("voltage", "supply voltage", 0.0),
     "supply_frequency": ("frequency", "supply frequency", 0.0),
 }
-"""name -> (quantity, label, standard uncertainty in SI of an instrument not entered as a meter: PRACTICE)."""
+"""name -> (quantity, label, half-width in SI of an instrument not entered as a meter, rectangular: PRACTICE)."""
 
 
 def rows_of(work, step):
@@ -121,13 +125,13 @@ class Lookup:
         return value
 
     def _condition(self, name):
-        quantity, label, u = CONDITIONS[name]
+        quantity, label, half_width = CONDITIONS[name]
         key = name.replace("supply_", "")
         given = self.work.conditions.get(key)
         if not given:
             raise MissingInput([label])
         value = float(typed(given, quantity, None).values[0].base)
-        return influence(value, u, label) if u else value
+        return influence(value, half_width / ROOT3, label) if half_width else value
 
     def _derived(self, value):
         each = value.get("each")
