@@ -17,7 +17,7 @@ class Signer(Protocol):
     """A device's own key: what it signs with and how others check it."""
 
     @property
-    def public_key(self) -> str:
+    def public_hex(self) -> str:
         """The uncompressed P-256 point, in hexadecimal."""
 
     def sign(self, data: bytes) -> str:

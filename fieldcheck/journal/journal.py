@@ -38,6 +38,7 @@ from fieldcheck.journal.forms import (
     stamp,
 )
 from fieldcheck.journal.hashing import sha256
+from fieldcheck.keys.devices import verify as verify_signature
 
 COLUMNS = "cursor, hash, device, seq, job, type, received, text"
 INSERT_EVENT = "insert into events (hash, device, seq, job, type, received, text) values (?, ?, ?, ?, ?, ?, ?)"
@@ -51,7 +52,7 @@ class Journal:
     def __init__(self, folder: Path, signer: Signer | None = None, verify: Verifier | None = None) -> None:
         self.folder = folder
         self.signer = signer
-        self._verify = verify or _verify_signature
+        self._verify = verify or verify_signature
         self._threads = threading.local()
         self._keys: dict[str, str] = {}
 
@@ -144,7 +145,7 @@ class Journal:
     def enrol_own(self, name: str, platform: str, app_version: str, now: datetime) -> str:
         """Make the desk a new device with its own chain under `signer`; its identity. Earlier ones write no more."""
         device = new_id()
-        data = {"device": device, "name": name, "public_key": self._own_signer().public_key, "platform": platform,
+        data = {"device": device, "name": name, "public_key": self._own_signer().public_hex, "platform": platform,
                 "app_version": app_version}
         with exclusive(self.db) as connection:
             connection.execute("insert into own_devices (device) values (?)", (device,))
@@ -305,9 +306,3 @@ class Journal:
     def consistency_proof(self, first: int, second: int) -> list[str]:
         """Proof that the tree of `first` events only grew into that of `second`."""
         return tree.consistency(self.db, first, second)
-
-
-def _verify_signature(public_key: str, data: bytes, signature: str) -> bool:
-    from fieldcheck.keys.devices import verify
-
-    return bool(verify(public_key, data, signature))

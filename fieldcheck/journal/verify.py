@@ -15,7 +15,7 @@ from fieldcheck.journal.batches import Verifier, public_key_of
 from fieldcheck.journal.database import FILE, JournalError, expected_objects, schema_faults
 from fieldcheck.journal.forms import Event, TreeHead
 from fieldcheck.journal.hashing import run, sha256
-from fieldcheck.journal.journal import _verify_signature
+from fieldcheck.keys.devices import verify as verify_signature
 
 LISTED = 20         # the rest of one kind of finding is counted
 
@@ -46,7 +46,7 @@ def verify(folder: Path, known: Iterable[TreeHead] = (), check: Verifier | None 
         missing = {name for kind, name in expected_objects() if kind == "table"} - _tables(connection)
         if missing:
             return faults
-        return [*faults, *_contents(connection, folder, known, check or _verify_signature)]
+        return [*faults, *_contents(connection, folder, known, check or verify_signature)]
     except sqlite3.DatabaseError as error:
         return [f"The database file is damaged: {error}."]
     finally:

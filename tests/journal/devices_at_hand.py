@@ -25,7 +25,7 @@ class Key:
         self._key = ec.generate_private_key(ec.SECP256R1())
 
     @property
-    def public_key(self) -> str:
+    def public_hex(self) -> str:
         point = self._key.public_key().public_bytes(
             serialization.Encoding.X962, serialization.PublicFormat.UncompressedPoint
         )
@@ -61,7 +61,7 @@ class Phone:
         self.texts: list[str] = []
         self.hashes: list[str] = []
         self.signatures: dict[str, str] = {}
-        self.write("device.enrolled", {"device": self.device, "name": "Phone", "public_key": self.key.public_key,
+        self.write("device.enrolled", {"device": self.device, "name": "Phone", "public_key": self.key.public_hex,
                                        "platform": "test", "app_version": "0"})
 
     def write(self, type: str, data: dict[str, Any], job: str = "", seen: dict[str, int] | None = None) -> str:

@@ -18,6 +18,7 @@ from fieldcheck.journal.database import JournalError
 from fieldcheck.journal.forms import Ack, Refused, new_id
 from fieldcheck.journal.journal import Journal
 from fieldcheck.journal.verify import verify as verify_journal
+from fieldcheck.keys.devices import make_device_key
 
 
 @pytest.fixture
@@ -124,7 +125,7 @@ def test_a_signing_needs_the_devices_signature_over_its_exact_text(journal: Jour
     assert refusal(journal, device, texts, head, {signing: head.signature}).code == "signature"
     journal.append_batch(*phone.batch(), now=NOW)
     signature = journal.signature(signing)
-    assert verify(phone.key.public_key, b"fieldcheck signing 1\n" + texts[-1].encode(), signature)
+    assert verify(phone.key.public_hex, b"fieldcheck signing 1\n" + texts[-1].encode(), signature)
     with pytest.raises(NotFound):
         journal.signature(phone.hashes[0])
 
@@ -140,6 +141,17 @@ def test_the_desk_writes_its_own_chain_and_says_what_it_had_seen(journal: Journa
     assert read(handed.text)["prev"] == opened.hash and handed.seq == 3
     assert journal.events()[-1] == handed == journal.event(handed.hash)
     assert verify_journal(journal.folder, check=verify) == []
+
+
+def test_the_desks_real_key_signs_what_the_real_verification_accepts(tmp_path: Path, phone: Phone) -> None:
+    key = make_device_key(tmp_path / "keys" / "desk.pem")
+    journal = Journal.open(tmp_path / "shop", create=True, signer=key)
+    journal.enrol_own("Desk", "test", "0", NOW)
+    signing = journal.append_own("job.signed", {}, JOB, now=NOW)
+    journal.append_batch(*phone.batch(), now=NOW)
+    assert read(journal.enrolment(journal.own_device()).text)["data"]["public_key"] == key.public_hex
+    assert verify(key.public_hex, b"fieldcheck signing 1\n" + signing.text.encode(), journal.signature(signing.hash))
+    assert verify_journal(journal.folder) == []
 
 
 def test_a_journal_without_the_desks_key_does_not_write(tmp_path: Path) -> None:

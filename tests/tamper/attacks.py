@@ -152,7 +152,7 @@ def replaced_past_the_trigger(scene: Scene) -> list[str]:
 def replaced_genesis(scene: Scene) -> list[str]:
     with scene.unguarded() as db:
         stranger = read(scene.phone.texts[0])
-        stranger["data"]["public_key"] = Key().public_key
+        stranger["data"]["public_key"] = Key().public_hex
         text = write(stranger)
         db.execute("update events set text = ?, hash = ? where cursor = 1", (text, identity(text)))
     device = scene.phone.device
@@ -195,7 +195,7 @@ def rewritten_with_a_key_of_ones_own(scene: Scene) -> list[str]:
     key = Key()
     with scene.unguarded() as db:
         device = scene.other.device
-        rehash(db, device, lambda text: altered_text(text).replace(scene.other.key.public_key, key.public_key))
+        rehash(db, device, lambda text: altered_text(text).replace(scene.other.key.public_hex, key.public_hex))
         (last,) = db.execute("select hash from events where device = ? and seq = 3", (device,)).fetchone()
         signature = key.sign(f"fieldcheck head 1\n{device}\n3\n{last}".encode())
         db.execute("update heads set hash = ?, signature = ? where device = ?", (last, signature, device))
