@@ -5,7 +5,7 @@ from __future__ import annotations
 import hashlib
 import sqlite3
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 from fieldcheck.engine.chain import EVENT_PREFIX, head_message, read_event, signing_message
 from fieldcheck.engine.errors import EventError
@@ -16,8 +16,7 @@ Verifier = Callable[[str, bytes, str], bool]    # (public key, data, signature),
 PREFIX = EVENT_PREFIX.encode()
 
 
-@dataclass(frozen=True, slots=True)
-class Link:
+class Link(NamedTuple):
     """One event of a batch, read and hashed."""
 
     hash: str
@@ -34,23 +33,26 @@ def read_batch(device: str, texts: Sequence[str]) -> list[Link]:
         except EventError as error:
             where = f"event {number + 1} of the batch" + (f", {error.where}" if error.where else "")
             raise Refused("altered", 0, error.what, where, error.mend) from error
-        where = f"event {event['seq']} of device {device}"
         if event["device"] != device:
-            raise Refused("altered", 0, f"it is of another device, {event['device']}", where)
+            raise Refused("altered", 0, f"it is of another device, {event['device']}", _where(event))
         if (event["type"] == "device.enrolled") != (event["seq"] == 1):
-            raise Refused("altered", 0, "a device's first event enrols it, and no later one does", where)
+            raise Refused("altered", 0, "a device's first event enrols it, and no later one does", _where(event))
         if links:
-            _check_follows(links[-1], event, where)
+            _check_follows(links[-1], event)
         digest = hashlib.sha256(PREFIX + text.encode()).hexdigest()
         links.append(Link(digest, event, text))
     return links
 
 
-def _check_follows(before: Link, event: Event, where: str) -> None:
+def _where(event: Event) -> str:
+    return f"event {event['seq']} of device {event['device']}"
+
+
+def _check_follows(before: Link, event: Event) -> None:
     if event["seq"] != before.event["seq"] + 1:
-        raise Refused("gap", 0, f"event {before.event['seq'] + 1} was expected here", where)
+        raise Refused("gap", 0, f"event {before.event['seq'] + 1} was expected here", _where(event))
     if event["prev"] != before.hash:
-        raise Refused("altered", 0, "it does not follow the event before it", where)
+        raise Refused("altered", 0, "it does not follow the event before it", _where(event))
 
 
 def check_head(device: str, links: Sequence[Link], head: Head, public_key: str, verify: Verifier) -> None:
@@ -68,7 +70,7 @@ def check_signings(links: Sequence[Link], signatures: Mapping[str, str], key: st
     for link in links:
         if link.event["type"] != "job.signed":
             continue
-        where = f"event {link.event['seq']} of device {link.event['device']}"
+        where = _where(link.event)
         signature = signatures.get(link.hash)
         if signature is None:
             raise Refused("signature", 0, "a signing came without its signature", where)
@@ -99,7 +101,7 @@ def new_links(connection: sqlite3.Connection, device: str, links: Sequence[Link]
         _check_held(connection, device, links[: len(links) - len(fresh)], last)
     if fresh:
         first = fresh[0].event
-        where = f"event {first['seq']} of device {device}"
+        where = _where(first)
         if first["seq"] != last + 1:
             raise Refused("gap", last, f"event {last + 1} is missing", where, f"send from event {last + 1} on")
         if first["prev"] != last_hash:
@@ -115,5 +117,5 @@ def _check_held(connection: sqlite3.Connection, device: str, links: Sequence[Lin
     for link in links:
         seq = link.event["seq"]
         if held.get(seq) != link.hash:
-            raise Refused("fork", last, "another event stands in its place here", f"event {seq} of device {device}",
+            raise Refused("fork", last, "another event stands in its place here", _where(link.event),
                           "the device must enrol anew and write these events again")
