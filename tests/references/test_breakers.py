@@ -1,5 +1,6 @@
 """Thermal breakers against checks 7.1-7.3 (IEC 60255-8 in relay manuals), with scipy as outside reference."""
 
+import itertools
 import math
 
 import pytest
@@ -152,6 +153,55 @@ def test_the_fit_is_the_least_of_the_sums_of_squares():
     for tau in (0.999, 1.0, 1.001):
         for limit in (0.999, 1.0, 1.001):
             assert squares(fit.tau * tau, fit.i_limit * limit) >= least * (1.0 - 1e-12)
+
+
+def test_the_deeper_of_two_valleys_is_found():
+    # hot trips mixed with a cold one leave a second, shallower valley near 12.4 A
+    currents, preloads = [30.15, 38.52, 13.87], [4.62, 4.62, 0.0]
+    times = [breakers.trip_time_hot(i, p, 6.6, 60.0) for i, p in zip(currents, preloads, strict=True)]
+    fit = breaker_fit.fit(currents, times, preloads)
+    assert (fit.tau, fit.i_limit) == pytest.approx((60.0, 6.6), rel=1e-9)
+
+
+def test_two_answers_are_no_answer():
+    # a cold and a hot trip of which two pairs of constants give the same times: both are exact, so neither is told
+    currents, preloads = [2.0566, 5.0643], [0.0, 0.7]
+    times = [breakers.trip_time_hot(i, p, 1.0, 60.0) for i, p in zip(currents, preloads, strict=True)]
+
+    def mismatch(limit):
+        shapes = [breakers.trip_time_hot(i, p, limit, 1.0) for i, p in zip(currents, preloads, strict=True)]
+        return shapes[0] / shapes[1] - times[0] / times[1]
+
+    signs = [mismatch(0.7001 + 0.002 * k) > 0.0 for k in range(678)]
+    assert sum(a != b for a, b in itertools.pairwise(signs)) == 2
+    with pytest.raises(OutOfRange) as caught:
+        breaker_fit.fit(currents, times, preloads)
+    assert caught.value.what == "two limiting currents fit the trips alike"
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_the_valley_is_the_deepest_of_a_fine_scan(seed):
+    import numpy as np
+
+    rng = np.random.Generator(np.random.PCG64(seed))
+    n, noise = (3, 4, 6, 9)[seed % 4], (0.0, 0.01, 0.05)[seed % 3]
+    currents = list(2.0 * rng.uniform(1.15, 6.0, n))
+    preloads = [float(p) for p in rng.choice([0.0, 1.4], n)]
+    times = [breakers.trip_time_hot(i, p, 2.0, 60.0) * math.exp(noise * x) for i, p, x in zip(
+        currents, preloads, rng.standard_normal(n), strict=True)]
+    logs, squares, warm = np.log(times), np.square(currents), np.square(preloads)
+
+    def depth(limit):
+        rest = logs - np.log(np.log((squares - warm) / (squares - limit * limit)))
+        return float(((rest - rest.mean()) ** 2).sum())
+
+    scan = min(depth(limit) for limit in np.linspace(max(preloads), min(currents), 3003)[1:-1])
+    try:
+        limit = breaker_fit.fit(currents, times, preloads).i_limit
+    except OutOfRange:
+        assert noise > 0.0 or n == 3  # exact trips at four or more currents are always settled
+        return
+    assert depth(limit) <= scan * (1.0 + 1e-6) + 1e-12
 
 
 def carrying(values, name, relative_gain, u):

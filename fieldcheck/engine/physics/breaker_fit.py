@@ -11,8 +11,12 @@ from fieldcheck.engine.errors import OutOfRange
 from fieldcheck.engine.frozen import frozen
 from fieldcheck.engine.measured import exp, influence, log, sqrt, value_of
 
-GRID = 48
-HALVINGS = 80
+GRID = 20
+ENDS_LOW = (0.0001, 0.001, 0.01)     # shares of the span beside the even grid, where valleys are narrow
+ENDS_HIGH = (0.99, 0.999, 0.999999)
+STEPS = 100
+ALIKE = 4.0     # a sum of squares within four times the least, and
+EXACT = 1e-16   # two that are zero but for rounding, cannot be told apart (PRACTICE)
 SCATTER = "scatter of the trip times about the curve"
 
 
@@ -81,33 +85,58 @@ def _sum_of_squares(limit, data):
 
 
 def _solve(data, low, high):
-    """Limiting current of least squares: a grid finds the valley, halving the root of the gradient in it."""
+    """Limiting current of least squares: a grid finds the valleys, `_root` the floor of each, the deepest wins.
+
+    Hot and cold trips together may have two valleys. A second nearly as deep is refused: no answer would be right.
+    """
     span = high - low
-    grid = [low + span * (k / (GRID + 1.0)) for k in range(1, GRID + 1)]
-    grid.append(low + span * 0.999)
-    grid.append(low + span * 0.999999)
-    grid.insert(0, low + span * 0.001)
+    grid = [low + span * share for share in ENDS_LOW]
+    for k in range(1, GRID + 1):
+        grid.append(low + span * (k / (GRID + 1.0)))
+    for share in ENDS_HIGH:
+        grid.append(low + span * share)
     sums = [_sum_of_squares(limit, data) for limit in grid]
-    best = 0
-    for k in range(len(sums)):
-        if sums[k] < sums[best]:
-            best = k
-    if best == 0 or best == len(grid) - 1:
+    floors = []
+    for k in range(1, len(grid) - 1):
+        if sums[k] < sums[k - 1] and sums[k] <= sums[k + 1]:
+            limit = _root(data, grid[k - 1], grid[k + 1])
+            floors.append((_sum_of_squares(limit, data), limit))
+    floors.sort()
+    if not floors or min(sums[0], sums[-1]) < floors[0][0]:
         raise OutOfRange("the trips do not settle a limiting current", "times",
                          "add a trip at a current nearer to the rated one, and check the readings")
-    below, above = grid[best - 1], grid[best + 1]
-    sign = _gradient(below, data) > 0.0
-    if (_gradient(above, data) > 0.0) == sign:
+    if len(floors) > 1 and floors[1][0] <= ALIKE * floors[0][0] + EXACT:
+        raise OutOfRange("two limiting currents fit the trips alike", "currents",
+                         "add a cold trip at a current nearer to the rated one")
+    return floors[0][1]
+
+
+def _root(data, below, above):
+    """Where the gradient is zero between two limits, by the Illinois form of false position (to about 1e-12).
+
+    The last step of `fit` is Newton's, which takes it to the last digits.
+    """
+    at_below, at_above = _gradient(below, data), _gradient(above, data)
+    if (at_below > 0.0) == (at_above > 0.0):
         raise OutOfRange("the trips do not settle a limiting current", "currents",
                          "trip at two currents that differ clearly")
-    for _ in range(HALVINGS):
-        middle = 0.5 * (below + above)
-        if middle == below or middle == above:
-            break
-        if (_gradient(middle, data) > 0.0) == sign:
-            below = middle
+    last, side = above, 0
+    for _ in range(STEPS):
+        trial = (below * at_above - above * at_below) / (at_above - at_below)
+        if not below < trial < above:
+            trial = 0.5 * (below + above)
+        here = _gradient(trial, data)
+        if here == 0.0 or abs(trial - last) <= 1e-12 * trial:
+            return trial
+        if (here > 0.0) == (at_below > 0.0):
+            below, at_below = trial, here
+            at_above = at_above * 0.5 if side == 1 else at_above
+            side = 1
         else:
-            above = middle
+            above, at_above = trial, here
+            at_below = at_below * 0.5 if side == -1 else at_below
+            side = -1
+        last = trial
     return 0.5 * (below + above)
 
 

@@ -268,7 +268,7 @@ def _model_reading(v_open, r_source, r_series, i_saturation, n_vt, r_shunt, sign
             raise OutOfRange(name + " must be above zero", name)
     if value_of(v_open) > 600.0 * value_of(n_vt):
         raise OutOfRange("the open voltage is too high for the model of the cell", "v_open")
-    return through(lambda *given: _reading(*given, sign), [v_open, r_source, r_series, i_saturation, n_vt, r_shunt])
+    return through(_reading, [v_open, r_source, r_series, i_saturation, n_vt, r_shunt, sign])
 
 
 def ohmmeter_forward(v_open, r_source, r_series, i_saturation, n_vt, r_shunt):

@@ -97,26 +97,34 @@ def modules_needed(name):
 def _module(name):
     """The physics module; each is imported where it is first wanted, so that the phone need not load all."""
     if name == "windings":
-        from fieldcheck.engine.physics import windings as module
-    elif name == "rectifiers":
-        from fieldcheck.engine.physics import rectifiers as module
-    elif name == "meter_effects":
-        from fieldcheck.engine.physics import meter_effects as module
-    elif name == "breakers":
-        from fieldcheck.engine.physics import breakers as module
-    elif name == "breaker_fit":
-        from fieldcheck.engine.physics import breaker_fit as module
-    elif name == "conductors":
-        from fieldcheck.engine.physics import conductors as module
-    elif name == "sequencers":
-        from fieldcheck.engine.physics import sequencers as module
-    elif name == "pulses":
-        from fieldcheck.engine.physics import pulses as module
-    elif name == "lubricants":
-        from fieldcheck.engine.physics import lubricants as module
-    else:
-        from fieldcheck.engine.physics import contacts as module
-    return module
+        from fieldcheck.engine.physics import windings
+        return windings
+    if name == "rectifiers":
+        from fieldcheck.engine.physics import rectifiers
+        return rectifiers
+    if name == "meter_effects":
+        from fieldcheck.engine.physics import meter_effects
+        return meter_effects
+    if name == "breakers":
+        from fieldcheck.engine.physics import breakers
+        return breakers
+    if name == "breaker_fit":
+        from fieldcheck.engine.physics import breaker_fit
+        return breaker_fit
+    if name == "conductors":
+        from fieldcheck.engine.physics import conductors
+        return conductors
+    if name == "sequencers":
+        from fieldcheck.engine.physics import sequencers
+        return sequencers
+    if name == "pulses":
+        from fieldcheck.engine.physics import pulses
+        return pulses
+    if name == "lubricants":
+        from fieldcheck.engine.physics import lubricants
+        return lubricants
+    from fieldcheck.engine.physics import contacts
+    return contacts
 
 
 def _fitted(parameter, value, name):

@@ -15,6 +15,7 @@ MISS_COST = 1.0
 MARGIN = 1.0       # explanations nearer than one miss are not told apart (PRACTICE)
 MOST_KEPT = 50     # alternatives listed
 MOST_PULSES = 2000
+UNREACHED = 1e300
 TINY = 1e-9        # costs are sums of decimal fractions
 
 
@@ -62,30 +63,33 @@ def _places(shown, symbol, where):
 
 
 def _costs_to_go(shown, seen):
-    """ahead[k][p]: least cost of pulses k+1 to the end when the drum stands at p after pulse k; None = impossible."""
+    """ahead[k][p]: least cost of pulses k+1 to the end when the drum stands at p after pulse k."""
     size = len(shown)
-    ahead = [None] * (len(seen) + 1)
-    ahead[len(seen)] = [0.0] * size
+    ahead = [[0.0] * size]  # from the last pulse backwards, turned round at the end
     for k in range(len(seen) - 1, -1, -1):
         places = _places(shown, seen[k], "pulse " + str(k + 1))
         here = []
         for p in range(size):
-            best = None
+            best = UNREACHED
             for step in range(max(4, size)):
                 target = (p + step) % size
                 if target in places:
-                    cost = step_cost(step) + ahead[k + 1][target]
-                    if best is None or cost < best:
+                    cost = step_cost(step) + ahead[-1][target]
+                    if cost < best:
                         best = cost
             here.append(best)
-        ahead[k] = here
+        ahead.append(here)
+    ahead.reverse()
     return ahead
 
 
 def _paths(shown, starts, seen, ahead, bound):
     """Every (cost, steps, positions) of cost under `bound`, at most MOST_KEPT + 1 different ones in steps."""
-    size, found, known = len(shown), [], {}
-    stack = [(0.0, (), (start,)) for start in reversed(starts)]
+    size, known = len(shown), {}
+    found = []  # type: list[tuple[float, tuple[int, ...], tuple[int, ...]]]
+    stack = []  # type: list[tuple[float, tuple[int, ...], tuple[int, ...]]]
+    for start in reversed(starts):
+        stack.append((0.0, (), (start,)))
     while stack and len(found) <= MOST_KEPT:
         cost, steps, positions = stack.pop()
         k = len(steps)
