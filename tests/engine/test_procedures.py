@@ -102,8 +102,7 @@ def test_an_unknown_nameplate_value_is_replaced_as_the_rule_says_and_told():
 def test_a_hold_point_stands_wherever_the_supply_changes_and_blocks_what_follows():
     work = assess.fill(PART, {"procedure": "trial", "on": "2026-06-01"})
     flow = procedures.Flow(work)
-    assert [one.key for one in flow.instances] == ["nameplate|0|rated"][:0] + [
-        "supply|0|cover_off", "cover_off|0", "supply|0|r", "r|0"]
+    assert [one.key for one in flow.instances] == ["supply|0|cover_off", "cover_off|0", "supply|0|r", "r|0"]
     assert [one.ready for one in flow.instances] == [True, False, False, False]
 
 
@@ -114,7 +113,8 @@ def test_a_safety_limit_read_without_a_meter_bounds_the_outcome():
     assert said["verdicts"]["drop_limit"]["final"] == "not judged" and said["outcome"] == "unserviceable"
 
 
-@pytest.mark.parametrize(("text", "statement"), [("OL", "fail"), (">200", "fail"), ("<10", "pass"), (">1", "not judged")])
+@pytest.mark.parametrize(("text", "statement"),
+                         [("OL", "fail"), (">200", "fail"), ("<10", "pass"), (">1", "not judged")])
 def test_a_bounded_reading_counts_only_where_its_bound_settles_the_limit(text, statement):
     assert run(act("cover_off"), read(text))["verdicts"]["drop_limit"]["found"] == statement
 
