@@ -25,7 +25,7 @@ from fieldcheck.keys.files import private_folder, read_private, write_private
 
 KEY_BITS = 3072
 VALID_YEARS = 30
-LONGEST_NAME = 64  # RFC 5280, appendix A: ub-common-name and ub-organization-name
+LONGEST_NAME = 64  # RFC 5280, appendix A: ub-common-name, ub-organization-name; the library counts UTF-8 bytes
 FOLDER = "records"  # inside the key folder; it appears whole, by one rename
 ROOT, ROOT_KEY, SEAL, SEAL_KEY = "root.pem", "root.key.pem", "seal.pem", "seal.key.pem"
 
@@ -57,7 +57,7 @@ def has_sealing_keys(folder: Path) -> bool:
 def create_sealing_keys(folder: Path, workshop: str, when: datetime | None = None) -> SealingKeys:
     """Make root and seal once, in the key folder `folder` (0700, files 0600), and return them.
 
-    workshop: its name, at most 64 characters, as readers will show it. when: start of validity, with time zone;
+    workshop: its name, as readers will show it; a certificate holds 64 bytes of it, a longer one is cut. when: start of validity, with time zone;
     now if left out. Raises FieldcheckError when the keys exist already or the name cannot be used.
     """
     start = (when or datetime.now(UTC)).astimezone(UTC).replace(microsecond=0)
@@ -100,11 +100,9 @@ def load_sealing_keys(folder: Path) -> SealingKeys:
 
 def _checked_name(workshop: str) -> str:
     name = " ".join(workshop.split())
-    if not name or not name.isprintable() or len(name) > LONGEST_NAME:
+    if not name or not name.isprintable():
         raise FieldcheckError(
-            "the workshop's name cannot stand in a certificate",
-            "workshop",
-            f"use 1 to {LONGEST_NAME} printable characters",
+            "the workshop's name cannot stand in a certificate", "workshop", "use printable characters, at least one"
         )
     return name
 
@@ -112,8 +110,7 @@ def _checked_name(workshop: str) -> str:
 def _write_pair(folder: Path, workshop: str, start: datetime) -> None:
     root_key = rsa.generate_private_key(public_exponent=65537, key_size=KEY_BITS)
     seal_key = rsa.generate_private_key(public_exponent=65537, key_size=KEY_BITS)
-    root_name = _name(workshop, _shortened(workshop, " records root"))
-    seal_name = _name(workshop, workshop)
+    root_name, seal_name = _name(workshop, " records root"), _name(workshop, "")
     root = _certificate(root_name, root_name, root_key.public_key(), root_key, start, authority=True)
     seal = _certificate(seal_name, root_name, seal_key.public_key(), root_key, start, authority=False)
     write_private(folder / ROOT_KEY, _pem(root_key))
@@ -122,14 +119,18 @@ def _write_pair(folder: Path, workshop: str, start: datetime) -> None:
     write_private(folder / SEAL, seal.public_bytes(serialization.Encoding.PEM))
 
 
-def _shortened(workshop: str, ending: str) -> str:
-    return workshop[: LONGEST_NAME - len(ending)].rstrip() + ending
-
-
-def _name(workshop: str, common: str) -> x509.Name:
+def _name(workshop: str, ending: str) -> x509.Name:
     return x509.Name(
-        [x509.NameAttribute(NameOID.ORGANIZATION_NAME, workshop), x509.NameAttribute(NameOID.COMMON_NAME, common)]
+        [
+            x509.NameAttribute(NameOID.ORGANIZATION_NAME, _cut(workshop, LONGEST_NAME)),
+            x509.NameAttribute(NameOID.COMMON_NAME, _cut(workshop, LONGEST_NAME - len(ending)) + ending),
+        ]
     )
+
+
+def _cut(text: str, size: int) -> str:
+    """The longest start of `text` that takes at most `size` bytes of UTF-8, whole characters only."""
+    return text.encode("utf-8")[:size].decode("utf-8", "ignore").rstrip()
 
 
 def _end(start: datetime) -> datetime:
