@@ -82,7 +82,9 @@ def judge(work, limit, key, row, number):
 
 def _judge(work, limit, key, row, number):
     entry = entry_on(limit, work.on)
-    lookup = readings.Lookup(work, number, "" if row == "?" else row)
+    lookup = readings.Lookup(work, number)
+    if row not in ("", "?"):
+        lookup = readings.Lookup(work, number, row, table_of(work, limit))
     value = None
     side = ""
     reason = ""

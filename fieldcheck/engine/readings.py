@@ -77,16 +77,20 @@ def typed(value, quantity, unit):
 
 
 class Lookup:
-    """name -> value, for one round and one row ("" = whole tables).
+    """name -> value, for one round and one row of one table ("" = the whole item).
+
+    Inside a row the table's columns, and values computed for each of its rows, are that row's; all else is the whole
+    item's.
 
     used: list of (step id, index, round, Answer); states: the state of each meter that took part; notes: corrections
     and assumptions in words.
     """
 
-    def __init__(self, work, number, row=""):
+    def __init__(self, work, number, row="", table=""):
         self.work = work
         self.number = number
         self.row = row
+        self.table = table
         self.used = []
         self.states = []
         self.notes = []
@@ -134,15 +138,20 @@ class Lookup:
         return influence(value, half_width / ROOT3, label) if half_width else value
 
     def _derived(self, value):
-        each = value.get("each")
-        if not each or self.row:
+        each = value.get("each") or ""
+        if each == self.table:
             return evaluate(value["formula"], self)
-        result = []
-        for row in rows_of(self.work, self.work.step(each)):
-            inner = Lookup(self.work, self.number, row)
-            result.append(evaluate(value["formula"], inner))
+        if not each:
+            return self._inside("", "", value)
+        return [self._inside(row, each, value) for row in rows_of(self.work, self.work.step(each))]
+
+    def _inside(self, row, table, value):
+        """A value of another row or of the whole item; what it used counts as used here."""
+        inner = Lookup(self.work, self.number, row, table)
+        try:
+            return evaluate(value["formula"], inner)
+        finally:
             self._take_over(inner)
-        return result
 
     def _take_over(self, inner):
         self.used += inner.used
@@ -164,7 +173,7 @@ class Lookup:
             found = [one for one in step["columns"] if one["id"] == column]
             if not found:
                 raise FieldcheckError('table "' + step["id"] + '" has no column "' + column + '"')
-            if self.row:
+            if self.table == step["id"]:
                 return self._reading(step, found[0], self.row)
             return [self._reading(step, found[0], row) for row in rows_of(self.work, step)]
         return self._reading(step, step, "")
