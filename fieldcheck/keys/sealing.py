@@ -57,8 +57,9 @@ def has_sealing_keys(folder: Path) -> bool:
 def create_sealing_keys(folder: Path, workshop: str, when: datetime | None = None) -> SealingKeys:
     """Make root and seal once, in the key folder `folder` (0700, files 0600), and return them.
 
-    workshop: its name, as readers will show it; a certificate holds 64 bytes of it, a longer one is cut. when: start of validity, with time zone;
-    now if left out. Raises FieldcheckError when the keys exist already or the name cannot be used.
+    workshop: its name, as readers will show it; a certificate holds 64 bytes of it, a longer one is cut.
+    when: start of validity, with time zone; now if left out.
+    Raises FieldcheckError when the keys exist already or the name cannot be used.
     """
     start = (when or datetime.now(UTC)).astimezone(UTC).replace(microsecond=0)
     name = _checked_name(workshop)

@@ -79,7 +79,7 @@ def lock(libraries: list[Path]) -> None:
             raise PermissionError(f"drawing a document does not allow {event}")
         if event == "open" and isinstance(details[0], str | bytes):
             path = os.path.realpath(os.fsdecode(details[0]))
-            if not path.startswith(allowed):
+            if not (path + os.sep).startswith(allowed):
                 raise PermissionError(f"drawing a document does not allow opening {path}")
 
     sys.addaudithook(refuse)

@@ -18,8 +18,10 @@ DRAWING = """<svg xmlns="http://www.w3.org/2000/svg" width="200" height="40" vie
 <text x="60" y="12" font-size="10" font-family="Roboto">0.5 Ω ✓</text></svg>"""
 HTML = f"""<!doctype html><html lang="en"><head><meta charset="utf-8"><title>Record FC-1</title>
 <meta name="author" content="Invented Workshop"></head><body>
-<h1>Contact set K3 <b>✓</b></h1><p>U = 1.2 mΩ, τ = 90 s, Δϑ ≤ 30 K, ⌀ 4 mm, −5 °C, <i>μ</i> → ∞ and <code>k²S²</code></p>
-<table><thead><tr><th>as found</th><th>as left</th></tr></thead><tbody><tr><td>0.52 Ω</td><td>0.11 Ω</td></tr></tbody></table>
+<h1>Contact set K3 <b>✓</b></h1>
+<p>U = 1.2 mΩ, τ = 90 s, Δϑ ≤ 30 K, ⌀ 4 mm, −5 °C, <i>μ</i> → ∞ and <code>k²S²</code></p>
+<table><thead><tr><th>as found</th><th>as left</th></tr></thead>
+<tbody><tr><td>0.52 Ω</td><td>0.11 Ω</td></tr></tbody></table>
 <p><img src="asset:photo.jpg" alt="photograph" width="120"><img src="asset:mark.png" alt="signature" width="60">
 <img src="asset:scale.svg" alt="scale"></p>{DRAWING.replace("<svg ", '<svg role="img" aria-label="scale" ')}
 </body></html>"""
