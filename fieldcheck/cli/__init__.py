@@ -6,11 +6,12 @@ Results go to standard output, talk to standard error.  Exit 0: fine; 1: the che
 import os
 import sys
 from pathlib import Path
+from typing import Any
 
 import click
 
 from fieldcheck import __version__
-from fieldcheck.engine.errors import FieldcheckError
+from fieldcheck.engine.errors import FieldcheckError, NotFound
 
 
 class Commands(click.Group):
@@ -41,6 +42,20 @@ def data_folder(given: str | None) -> Path:
     return Path(given or os.environ.get("FIELDCHECK_DATA") or Path.home() / "fieldcheck").expanduser()
 
 
+def part_of(procedure: str) -> dict[str, Any]:
+    """The compiled procedure of the rulebook that this program ships; NotFound names those there are."""
+    from fieldcheck import rulebook
+    from fieldcheck.engine.texts import read
+
+    book = rulebook.load(rulebook.rules_folder())
+    for one in read(book.index, None)["procedures"]:
+        if one["id"] == procedure:
+            part: dict[str, Any] = read(book.parts[one["part"]], None)
+            return part
+    known = ", ".join(one["id"] for one in read(book.index, None)["procedures"])
+    raise NotFound(f'there is no procedure "{procedure}"', "", f"there are: {known}")
+
+
 data_option = click.option(
     "--data", metavar="DIR", help="The workshop's folder (else FIELDCHECK_DATA, else ~/fieldcheck)."
 )
@@ -48,9 +63,9 @@ json_option = click.option("--json", "as_json", is_flag=True, help="Print the re
 
 
 def _register() -> None:
-    from fieldcheck.cli import journal, numbers, records, rules, serve
+    from fieldcheck.cli import jobs, numbers, records, rules, serve
 
-    for module in (serve, rules, journal, numbers, records):
+    for module in (serve, rules, jobs, records, numbers):
         module.register(main)
 
 

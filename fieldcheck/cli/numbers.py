@@ -7,9 +7,7 @@ from typing import Any
 
 import click
 
-from fieldcheck import rulebook
-from fieldcheck.cli import json_option
-from fieldcheck.cli import working as w
+from fieldcheck.cli import computing, json_option, part_of, runs
 from fieldcheck.engine import assess as engine_assess
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.physics.registry import REGISTRY
@@ -24,7 +22,8 @@ def read_json(path: str) -> Any:
     try:
         return json.loads(text)
     except json.JSONDecodeError as error:
-        raise FieldcheckError(f"not JSON: {error.msg}", f"{path}:{error.lineno}", "compare with the template") from error
+        where = f"{path}:{error.lineno}"
+        raise FieldcheckError(f"not JSON: {error.msg}", where, "compare with the template") from error
 
 
 @click.command()
@@ -40,17 +39,18 @@ def assess(run: str | None, template: str | None, schema: bool, as_json: bool) -
     Example: fieldcheck assess --template contact-cleaning > run.json; fieldcheck assess run.json
     """
     if schema:
-        click.echo(json.dumps(w.run_schema(), indent=2))
+        click.echo(json.dumps(runs.run_schema(), indent=2))
         return
     if template:
-        click.echo(json.dumps(w.template(rulebook.part(template)), indent=2, ensure_ascii=False))
+        click.echo(json.dumps(runs.template(part_of(template)), indent=2, ensure_ascii=False))
         return
     if not run:
         raise click.UsageError("name a run file, or ask for one with --template PROCEDURE")
-    data = w.checked_run(read_json(run))
-    said = engine_assess.assess(rulebook.part(data["procedure"]), data)
-    said["explanations"] = engine_assess.explanations(rulebook.part(data["procedure"]), data)
-    click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else w.assessment_text(said))
+    data = runs.checked_run(read_json(run))
+    part = part_of(data["procedure"])
+    said = engine_assess.assess(part, data)
+    said["explanations"] = engine_assess.explanations(part, data)
+    click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else runs.assessment_text(said))
     sys.exit(0 if said["outcome"] == "serviceable" else 1)
 
 
@@ -66,11 +66,11 @@ def functions(name: str | None, arguments: tuple[str, ...], as_json: bool) -> No
     Example: fieldcheck functions at_reference_temperature r=2.31±0.02ohm t=23.4degC t_ref=20degC k=234.5K
     """
     if name is None:
-        click.echo(w.function_list(as_json))
+        click.echo(computing.function_list(as_json))
     elif not arguments:
-        click.echo(w.description(REGISTRY[name], as_json))
+        click.echo(computing.description(REGISTRY[name], as_json))
     else:
-        click.echo(w.computed(REGISTRY[name], arguments, as_json))
+        click.echo(computing.computed(REGISTRY[name], arguments, as_json))
 
 
 @click.command()
@@ -84,8 +84,8 @@ def evaluate(model: str, as_json: bool) -> None:
 
     Example: fieldcheck evaluate model.json --json
     """
-    result = w.evaluated(read_json(model))
-    click.echo(json.dumps(result, indent=2, ensure_ascii=False) if as_json else w.evaluation_text(result))
+    result = computing.evaluated(read_json(model))
+    click.echo(json.dumps(result, indent=2, ensure_ascii=False) if as_json else computing.evaluation_text(result))
 
 
 def register(main: click.Group) -> None:
