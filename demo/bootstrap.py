@@ -50,7 +50,7 @@ def install_packages(names: tuple[str, ...]) -> None:
     line = ["apt-get", "install", "-y", "--no-install-recommends", *missing]
     if os.geteuid() == 0:
         prefix: list[str] = []
-    elif shutil.which("sudo") and subprocess.run(["sudo", "-n", "true"], capture_output=True, check=False).returncode == 0:
+    elif _may_sudo():
         prefix = ["sudo"]
     else:
         say("Some system packages are missing. Run this line, then start again:\n\n    sudo " + " ".join(line) + "\n")
@@ -59,6 +59,12 @@ def install_packages(names: tuple[str, ...]) -> None:
     environment = dict(os.environ, DEBIAN_FRONTEND="noninteractive")
     _run([*prefix, "apt-get", "update", "-qq"], "reading the package list", environment)
     _run([*prefix, *line], "installing", environment)
+
+
+def _may_sudo() -> bool:
+    if not shutil.which("sudo"):
+        return False
+    return subprocess.run(["sudo", "-n", "true"], capture_output=True, check=False).returncode == 0
 
 
 def _has_venv() -> bool:
@@ -93,7 +99,7 @@ def _run(command: list[str], doing: str, environment: dict[str, str] | None = No
 
 def install_program(extra: str = "") -> None:
     """Makes the virtual environment and installs this clone in it, with its tests' libraries when `extra` says so."""
-    if sys.version_info < (3, 11):
+    if sys.version_info < (3, 11):  # noqa: UP036  (an older Python reads this file before anything is installed)
         say("fieldcheck needs Python 3.11 or newer; this is " + sys.version.split()[0])
         raise SystemExit(2)
     stamp = VENV / ("installed" + ("-" + extra if extra else ""))

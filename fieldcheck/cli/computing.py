@@ -12,7 +12,7 @@ PLUS_MINUS = ("±", "+-", "+/-")
 Value = Any  # float or Measured, in SI
 
 
-# ---- functions -------------------------------------------------------------------------------------------------------
+# ---- functions
 
 
 def signature(function: Function) -> str:
@@ -89,7 +89,8 @@ def value(text: str, quantity: str, name: str) -> Value:
         unit = _unit_in(middle) or _unit_in(width) or base
         centre = _one(middle if _unit_in(middle) else f"{middle.strip()} {unit}", quantity, base, name)
         spread = "temperature difference" if quantity == "temperature" else quantity
-        u = _one(width if _unit_in(width) else f"{width.strip()} {unit}", spread, units.quantity(spread).base_unit, name)
+        written = width if _unit_in(width) else f"{width.strip()} {unit}"
+        u = _one(written, spread, units.quantity(spread).base_unit, name)
         return influence(centre, abs(u), name)
     return _one(text, quantity, base, name)
 
@@ -111,7 +112,7 @@ def _one(text: str, quantity: str, base: str, name: str) -> float:
     return float(read.values[0].base)
 
 
-# ---- a value with its uncertainty as texts -----------------------------------------------------------------------------
+# ---- a value with its uncertainty as texts
 
 
 def numbers(result: Value, correlations: Any = None, coverage: str = "95 %") -> dict[str, Any]:
@@ -142,7 +143,7 @@ def line(result: Value, unit: str) -> str:
     return f"{shown} ± {spread}{behind}   (U = k·u, k = {k}, 95 %, degrees of freedom {dof})"
 
 
-# ---- evaluate ----------------------------------------------------------------------------------------------------------
+# ---- evaluate
 
 
 def evaluated(model: Any) -> dict[str, Any]:

@@ -21,7 +21,7 @@ def record() -> None:
 @record.command()
 @click.argument("number")
 @data_option
-@click.option("--out", type=click.Path(path_type=Path), help="Where to write the PDF (else the workshop's records folder).")
+@click.option("--out", type=click.Path(path_type=Path), help="Where to write the PDF (else the workshop's folder).")
 def make(number: str, data: str | None, out: Path | None) -> None:
     """Make the signed PDF of a signed job and print its path.
 

@@ -47,7 +47,8 @@ def _check(data: Any, schema: dict[str, Any], where: str) -> None:
     kinds = {"object": dict, "array": list, "string": str, "integer": int, "boolean": bool}
     kind = schema.get("type")
     if kind and (not isinstance(data, kinds[kind]) or (kind == "integer" and isinstance(data, bool))):
-        raise FieldcheckError(f"this must be {'an' if kind[0] in 'aoi' else 'a'} {kind}", where, "compare with --template")
+        article = "an" if kind[0] in "aoi" else "a"
+        raise FieldcheckError(f"this must be {article} {kind}", where, "compare with --template")
     if "enum" in schema and data not in schema["enum"]:
         raise FieldcheckError(f"{json.dumps(data)} is not allowed", where, "use one of: " + ", ".join(schema["enum"]))
     if kind == "integer" and data < schema.get("minimum", data):
