@@ -131,8 +131,9 @@ def _demand_full_length(pdf: bytes, signature: EmbeddedPdfSignature) -> None:
     start, before, after, length = (int(number) for number in signature.byte_range)
     if start != 0 or not 0 < before < after or length < 0:
         raise _Altered(NOT_WHOLE)
-    if after + length > len(pdf):
-        raise _Altered(DAMAGED)
+    if after + length > len(pdf):  # cut, or written anew with the seal at another place
+        in_place = pdf[before : before + 1] == b"<" and pdf[after - 1 : after] == b">"
+        raise _Altered(DAMAGED if in_place else CHANGED)
 
 
 def _demand_intact(status: PdfSignatureStatus) -> None:
@@ -152,14 +153,14 @@ def _demand_whole_file(pdf: bytes, signature: EmbeddedPdfSignature, status: PdfS
         raise _Altered(ADDED)
 
 
-_ONE_CASE_OF_HEX = re.compile(rb"<(?:[0-9a-f]*|[0-9A-F]*)>")
+_HEX_AS_WRITTEN = re.compile(rb"<[0-9A-F]*>")  # upper case, as `seal` writes it: lower case is a second spelling
 
 
 def _demand_plain_container(pdf: bytes, signature: EmbeddedPdfSignature) -> None:
     """The bytes that the seal cannot cover, its own container, hold nothing but the seal in its only spelling."""
     _, before, after, _ = (int(number) for number in signature.byte_range)
     gap = pdf[before:after]
-    if not _ONE_CASE_OF_HEX.fullmatch(gap) or len(gap) % 2:
+    if not _HEX_AS_WRITTEN.fullmatch(gap) or len(gap) % 2:
         raise _Altered(SEAL_CHANGED)
     held = bytes.fromhex(gap[1:-1].decode("ascii"))
     content = cms.ContentInfo.load(held, strict=False)

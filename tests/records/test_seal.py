@@ -20,6 +20,8 @@ import pypdf
 import pytest
 import sample_record as sample
 from asn1crypto import cms
+from asn1crypto import pem as asn1_pem
+from asn1crypto import x509 as asn1_x509
 from pyhanko.pdf_utils import generic
 from pyhanko.pdf_utils.incremental_writer import IncrementalPdfFileWriter
 from pyhanko.sign import fields, signers
@@ -155,7 +157,7 @@ def test_the_file_stays_pdf_1_7_and_its_metadata_as_rendered(unsealed: bytes, se
 def test_without_its_seal_the_sealed_file_is_still_pdfa(sealed: bytes, tmp_path: Path) -> None:
     """The checker knows no signed files at all; this shows that sealing left everything else in order (19005-3)."""
     with pikepdf.open(io.BytesIO(sealed)) as file:
-        for key in ("/AcroForm", "/Perms"):
+        for key in ("/AcroForm", "/Perms", "/Extensions"):
             del file.Root[key]
         for page in file.pages:
             if "/Annots" in page:
@@ -253,19 +255,14 @@ def with_cms(change: Callable[[cms.ContentInfo], None]) -> Callable[[bytes], byt
     def rewritten(digits: bytes) -> bytes:
         content = cms.ContentInfo.load(bytes.fromhex(digits.decode()), strict=False)
         change(content)
-        return content.dump(force=True).hex().encode().ljust(len(digits), b"0")
+        return content.dump(force=True).hex().upper().encode().ljust(len(digits), b"0")
 
     return in_container(rewritten)
 
 
-def second_certificate(content: cms.ContentInfo) -> None:
-    certificates = content["content"]["certificates"]
-    certificates.append(certificates[0])
-
-
 def unsigned_attribute(content: cms.ContentInfo) -> None:
     signer = content["content"]["signer_infos"][0]
-    signer["unsigned_attrs"] = cms.CMSAttributes([cms.CMSAttribute({"type": "1.2.3.4", "values": [cms.Any()]})])
+    signer["unsigned_attrs"] = cms.CMSAttributes([cms.CMSAttribute({"type": "content_type", "values": ["data"]})])
 
 
 def zeros_turned(digits: bytes) -> bytes:
@@ -273,10 +270,8 @@ def zeros_turned(digits: bytes) -> bytes:
 
 
 def mixed_case(digits: bytes) -> bytes:
-    at = next(i for i, digit in enumerate(digits) if digit in b"abcdef")
-    other = next(i for i, digit in enumerate(digits) if digit in b"abcdef" and i > at)
-    assert other > at
-    return digits[:at] + digits[at : at + 1].upper() + digits[at + 1 :]
+    at = next(i for i, digit in enumerate(digits) if digit in b"ABCDEF")
+    return digits[:at] + digits[at : at + 1].lower() + digits[at + 1 :]
 
 
 def signature_bit(content: cms.ContentInfo) -> None:
@@ -303,7 +298,8 @@ ATTACKS: dict[str, tuple[Callable[[bytes], bytes], str]] = {
     "padding turned": (in_container(zeros_turned), sealcheck.SEAL_CHANGED),
     "hex in two cases": (in_container(mixed_case), sealcheck.SEAL_CHANGED),
     "signature bit": (with_cms(signature_bit), sealcheck.SEAL_CHANGED),
-    "second certificate": (with_cms(second_certificate), sealcheck.NOT_OURS),
+    "hex in lower case": (in_container(bytes.lower), sealcheck.SEAL_CHANGED),
+    "unsigned attribute": (with_cms(unsigned_attribute), sealcheck.NOT_OURS),
 }
 
 
@@ -317,8 +313,15 @@ def test_an_attack_is_named_in_one_sentence(name: str, sealed: bytes, keys: Seal
     assert not report.attachments
 
 
-def test_an_unsigned_attribute_slipped_into_the_container_is_refused(sealed: bytes, keys: SealingKeys) -> None:
-    assert check(with_cms(unsigned_attribute)(sealed), keys.root_pem).state == "altered"
+def test_a_seal_that_carries_its_root_along_is_not_of_our_kind(unsealed: bytes, keys: SealingKeys) -> None:
+    signer = sealer._signer(keys)
+    signer.embed_roots = True
+    signer.cert_registry.register(asn1_x509.Certificate.load(asn1_pem.unarmor(keys.root_pem)[2]))
+    out = io.BytesIO()
+    sealing_writer = sealer._QuietWriter(io.BytesIO(unsealed))
+    meta = signers.PdfSignatureMetadata(field_name="RecordSeal", subfilter=fields.SigSeedSubFilter.PADES)
+    sealer._DatedSigner(meta, signer, sample.WHEN).sign_pdf(sealing_writer, output=out)
+    assert check(out.getvalue(), keys.root_pem).sentence == sealcheck.NOT_OURS
 
 
 def flipped(pdf: bytes, count: int, start: int, end: int) -> list[tuple[int, bytes]]:
