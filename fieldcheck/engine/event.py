@@ -1,9 +1,7 @@
 """One event: the kinds there are, what its text must hold, and how it is read and made."""
 
-from fieldcheck.engine import texts
+from fieldcheck.engine import chain, texts
 from fieldcheck.engine.errors import EventError
-
-FIELDS = ("v", "device", "seq", "prev", "at", "offset", "person", "job", "seen", "type", "data")
 
 WORKSHOP_TYPES = {
     "workshop.named": ("name", "address"),
@@ -45,8 +43,8 @@ class Event:
     """One event, read and checked.  Attributes: the fields of its text, `hash`, `text` and `order`."""
 
     def __init__(self, digest, text):
-        fields = texts.read(text)
-        check_fields(fields)
+        fields = chain.read_event(text)
+        check_kind(fields)
         self.hash = digest
         self.text = text
         self.device = fields["device"]
@@ -72,40 +70,12 @@ class Event:
         return weight
 
 
-def check_fields(fields):
-    """Refuses (EventError) an event whose fields are not those of the format."""
-    if not isinstance(fields, dict):
-        raise EventError("an event is an object", "", "send the event's text unaltered")
-    for name in FIELDS:
-        if name not in fields:
-            raise EventError('an event lacks "' + name + '"', "", "send the event's text unaltered")
-    if len(fields) != len(FIELDS):
-        extra = [name for name in fields if name not in FIELDS]
-        raise EventError('an event has the unknown field "' + extra[0] + '"')
-    if fields["v"] != 1:
-        raise EventError("an event of version " + str(fields["v"]), "", "update this program: it reads version 1")
-    for name in ("device", "prev", "at", "person", "job", "type"):
-        if not isinstance(fields[name], str):
-            raise EventError('"' + name + '" must be a text', fields["type"] if name != "type" else "")
+def check_kind(fields):
+    """Refuses (EventError) an event that is of no known kind, or whose data lack what its kind needs."""
     where = fields["type"]
-    seq = fields["seq"]
-    if not isinstance(seq, int) or isinstance(seq, bool) or seq < 1:
-        raise EventError('"seq" must be a whole number from 1', where)
-    if not isinstance(fields["offset"], int) or isinstance(fields["offset"], bool):
-        raise EventError('"offset" must be whole minutes', where)
-    seen = fields["seen"]
-    if not isinstance(seen, dict) or not isinstance(seen.get("job"), dict) \
-            or not isinstance(seen.get("workshop"), dict):
-        raise EventError('"seen" must hold "job" and "workshop"', where)
-    for part in ("job", "workshop"):
-        for device in seen[part]:
-            if not isinstance(seen[part][device], int) or seen[part][device] < 1:
-                raise EventError('"seen" must hold sequence numbers', where)
     wanted = (JOB_TYPES if fields["job"] else WORKSHOP_TYPES).get(where)
     if wanted is None:
         raise EventError('"' + where + '" is not a kind of event of ' + ("a job" if fields["job"] else "the workshop"))
-    if not isinstance(fields["data"], dict):
-        raise EventError('"data" must be an object', where)
     for name in wanted:
         if name not in fields["data"]:
             raise EventError('its data lack "' + name + '"', where)
@@ -115,5 +85,5 @@ def make(device, seq, prev, at, offset, person, job, seen, kind, data):
     """The exact text of a new event.  seen: {"job": {device: seq}, "workshop": {device: seq}} of other devices."""
     fields = {"v": 1, "device": device, "seq": seq, "prev": prev, "at": at, "offset": offset, "person": person,
               "job": job, "seen": seen, "type": kind, "data": data}
-    check_fields(fields)
+    check_kind(fields)
     return texts.write(fields)

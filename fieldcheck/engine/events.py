@@ -13,15 +13,14 @@ The clock (`at`) is recorded and shown, never used for order.
 from fieldcheck.engine.event import (
     AFTER_SIGNING,
     ANSWER_KINDS,
-    FIELDS,
     JOB_TYPES,
     WORKSHOP_TYPES,
     Event,
-    check_fields,
+    check_kind,
     make,
 )
 
-__all__ = ["AFTER_SIGNING", "ANSWER_KINDS", "FIELDS", "JOB_TYPES", "WORKSHOP_TYPES", "Event", "check_fields", "fold",
+__all__ = ["AFTER_SIGNING", "ANSWER_KINDS", "JOB_TYPES", "WORKSHOP_TYPES", "Event", "check_kind", "fold",
            "make"]
 
 
