@@ -6,12 +6,11 @@ Results go to standard output, talk to standard error.  Exit 0: fine; 1: the che
 import os
 import sys
 from pathlib import Path
-from typing import Any
 
 import click
 
 from fieldcheck import __version__
-from fieldcheck.engine.errors import FieldcheckError, NotFound
+from fieldcheck.engine.errors import FieldcheckError
 
 
 class Commands(click.Group):
@@ -40,20 +39,6 @@ def main() -> None:
 def data_folder(given: str | None) -> Path:
     """Where the workshop lives: --data, else FIELDCHECK_DATA, else ~/fieldcheck."""
     return Path(given or os.environ.get("FIELDCHECK_DATA") or Path.home() / "fieldcheck").expanduser()
-
-
-def part_of(procedure: str) -> dict[str, Any]:
-    """The compiled procedure of the rulebook that this program ships; NotFound names those there are."""
-    from fieldcheck import rulebook
-    from fieldcheck.engine.texts import read
-
-    book = rulebook.load(rulebook.rules_folder())
-    for one in read(book.index, None)["procedures"]:
-        if one["id"] == procedure:
-            part: dict[str, Any] = read(book.parts[one["part"]], None)
-            return part
-    known = ", ".join(one["id"] for one in read(book.index, None)["procedures"])
-    raise NotFound(f'there is no procedure "{procedure}"', "", f"there are: {known}")
 
 
 data_option = click.option(

@@ -7,7 +7,8 @@ from typing import Any
 
 import click
 
-from fieldcheck.cli import computing, json_option, part_of, runs
+from fieldcheck import rulebook
+from fieldcheck.cli import computing, json_option, runs
 from fieldcheck.engine import assess as engine_assess
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.physics.registry import REGISTRY
@@ -42,12 +43,12 @@ def assess(run: str | None, template: str | None, schema: bool, as_json: bool) -
         click.echo(json.dumps(runs.run_schema(), indent=2))
         return
     if template:
-        click.echo(json.dumps(runs.template(part_of(template)), indent=2, ensure_ascii=False))
+        click.echo(json.dumps(runs.template(rulebook.part(template)), indent=2, ensure_ascii=False))
         return
     if not run:
         raise click.UsageError("name a run file, or ask for one with --template PROCEDURE")
     data = runs.checked_run(read_json(run))
-    part = part_of(data["procedure"])
+    part = rulebook.part(data["procedure"])
     said = engine_assess.assess(part, data)
     said["explanations"] = engine_assess.explanations(part, data)
     click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else runs.assessment_text(said))
