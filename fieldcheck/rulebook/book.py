@@ -14,9 +14,9 @@ from fieldcheck.rulebook.checks_steps import check_steps
 from fieldcheck.rulebook.compiling import Bounds, Json
 from fieldcheck.rulebook.findings import Finding, Findings, Source, did_you_mean
 from fieldcheck.rulebook.formula import Tree
-from fieldcheck.rulebook.shapes import Procedure
 from fieldcheck.rulebook.published import check_published
 from fieldcheck.rulebook.reading import shaped
+from fieldcheck.rulebook.shapes import Procedure
 from fieldcheck.rulebook.shelf import Shelf, load_shelf
 
 

@@ -11,8 +11,8 @@ from fieldcheck.rulebook.compiling import Json
 from fieldcheck.rulebook.findings import Findings, Source, did_you_mean
 from fieldcheck.rulebook.formula import Wrong
 from fieldcheck.rulebook.lines import Path
-from fieldcheck.rulebook.shapes import Case, Procedure, Step
 from fieldcheck.rulebook.reading import shaped
+from fieldcheck.rulebook.shapes import Case, Procedure, Step
 from fieldcheck.rulebook.shelf import Shelf, good_meters
 
 LAST = ("as left", "close")
@@ -78,8 +78,8 @@ def run_of(procedure: Procedure, case: Case, meters: list[Json]) -> Json:
             _answer(run, step, 0, case.last, case, chosen)
     for key, reason in case.skip.items():
         step_id, _, rest = key.partition("|")
-        number, _, index = rest.partition("|")
-        run["left"].append({"step": step_id, "round": int(number or 0), "index": index, "reason": reason})
+        round_text, _, index = rest.partition("|")
+        run["left"].append({"step": step_id, "round": int(round_text or 0), "index": index, "reason": reason})
     return run
 
 

@@ -4,8 +4,8 @@ from fieldcheck.engine.procedures import MOST_ROUNDS
 from fieldcheck.rulebook.findings import Findings, Source, did_you_mean
 from fieldcheck.rulebook.formula import Tree
 from fieldcheck.rulebook.lines import Path
-from fieldcheck.rulebook.shapes import Limit, Procedure, Step, When
 from fieldcheck.rulebook.scope import steps_behind
+from fieldcheck.rulebook.shapes import Limit, Procedure, Step, When
 
 PHASES = ("prepare", "as found", "service", "as left", "close")
 LAST = ("as left", "close")

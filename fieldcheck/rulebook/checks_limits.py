@@ -7,12 +7,13 @@ from typing import Any
 from fieldcheck.engine import budgets, units
 from fieldcheck.engine.errors import FieldcheckError, UnitError
 from fieldcheck.engine.formulas import names_in
+from fieldcheck.engine.unit_table import NONE
 from fieldcheck.rulebook.checks_flow import depth_problem
 from fieldcheck.rulebook.findings import Findings, Source, did_you_mean
 from fieldcheck.rulebook.formula import Scope, Tree, Type, Wrong, bound, check_quantity, check_unit, compiled
 from fieldcheck.rulebook.lines import Path
-from fieldcheck.rulebook.shapes import Limit, LimitEntry, Procedure, Value
 from fieldcheck.rulebook.scope import row_table, scope_of, steps_behind
+from fieldcheck.rulebook.shapes import Limit, LimitEntry, Procedure, Value
 from fieldcheck.rulebook.shelf import Shelf
 
 FIRST_DAY = datetime.date(2000, 1, 1)
@@ -44,7 +45,7 @@ def _value(source: Source, path: Path, value: Value, scope: Scope, findings: Fin
         dimension = check_quantity(value.quantity)
         if value.unit:
             check_unit(value.unit, value.quantity)
-        elif dimension != units.NONE:
+        elif dimension != NONE:
             raise Wrong(f"{value.quantity} without a unit", "add unit = \"...\", in which it is shown")
     except Wrong as wrong:
         findings.add(source, (*path, "unit" if "unit" in wrong.what else "quantity"), wrong.what, wrong.mend)
@@ -126,7 +127,7 @@ def limit_scope(source: Source, path: Path, limit: Limit, procedure: Procedure,
 
 def _shown_unit(source: Source, path: Path, limit: Limit, kind: Type, findings: Findings) -> None:
     if not limit.unit:
-        if kind.dimension != units.NONE:
+        if kind.dimension != NONE:
             findings.add(source, path, "has no unit", 'add unit = "...", in which the verdict is shown')
         return
     try:

@@ -163,7 +163,8 @@ def _sequence(source: Source, path: Path, step: Step, procedure: Procedure, shel
     for name, positions in layouts.items():
         said = f'layout "{name}"' if name else "the layout"
         if len(positions) < 2:
-            findings.add(source, (*path, "layout"), f"{said} has fewer than two positions", "name each position in turn")
+            findings.add(source, (*path, "layout"), f"{said} has fewer than two positions",
+                         "name each position in turn")
         elif len(set(positions)) == 1:
             findings.add(source, (*path, "layout"), f"{said} shows the same at every position",
                          "then nothing can be told: name what each position shows")

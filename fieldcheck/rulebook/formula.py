@@ -11,7 +11,8 @@ from typing import Any
 
 from fieldcheck.engine import formulas, units
 from fieldcheck.engine.errors import FieldcheckError, UnitError
-from fieldcheck.engine.physics.registry import REGISTRY, Parameter
+from fieldcheck.engine.physics.registry import REGISTRY
+from fieldcheck.engine.unit_table import KELVIN, NONE, POINT, UNITS
 from fieldcheck.rulebook.amounts import amount, looks_like_amount
 from fieldcheck.rulebook.findings import did_you_mean
 
@@ -34,7 +35,7 @@ class Type:
     choices: ids that a text may have; repeats: a value that stands for several readings of one question."""
 
     what: str
-    dimension: Any = units.NONE
+    dimension: Any = NONE
     choices: tuple[str, ...] = ()
     repeats: bool = False
 
@@ -236,8 +237,8 @@ class _Compiler:
         if name == "count":
             return tree, Type("value")
         dimension = kinds[0].dimension
-        if name == "spread" and dimension == units.POINT:
-            dimension = units.KELVIN
+        if name == "spread" and dimension == POINT:
+            dimension = KELVIN
         return tree, Type("value", dimension)
 
     def _maths(self, name: str, node: ast.Call) -> tuple[Tree, Type]:
@@ -248,7 +249,7 @@ class _Compiler:
         dimension = kind.dimension
         if name == "sqrt":
             dimension = _dimension(units.root, dimension)
-        elif name != "abs" and dimension != units.NONE:
+        elif name != "abs" and dimension != NONE:
             raise Wrong(f"{name} of {kind.name}", f"{name} takes a plain number: divide by a quantity of the same kind")
         return ["call", name, [tree], {}], Type("value", dimension)
 
@@ -278,7 +279,7 @@ class _Compiler:
         returned = units.quantity(function.returns).dimension
         return ["call", name, positional, named], Type("value", returned)
 
-    def _argument(self, name: str, parameter: Parameter, node: ast.expr) -> tuple[Tree, Type]:
+    def _argument(self, name: str, parameter: Any, node: ast.expr) -> tuple[Tree, Type]:
         if parameter.kind in ("text", "texts") and isinstance(node, ast.Constant) and isinstance(node.value, str):
             return ["text", node.value], Type("text")
         tree, kind = self.node(node)
@@ -327,7 +328,7 @@ def check_unit(unit: str, quantity: str) -> None:
         found = units.parse_unit(unit, quantity)
     except FieldcheckError as error:
         raise Wrong(error.what, error.mend) from None
-    if units.UNITS.get("u:" + unit) is None:
+    if UNITS.get("u:" + unit) is None:
         raise Wrong(f"\"{unit}\" is not spelt as rules spell it", f"write \"{found.symbol}\"")
     if found.dimension != of.dimension:
         raise Wrong(f"\"{unit}\" is not a unit of {quantity}")

@@ -1,91 +1,92 @@
-"""Where a key stands in a TOML file of the house style: one key a line, [table] and [[table]] headers.
+"""Where each key of a TOML file stands: path -> line.
 
-For messages only, never for meaning: what is not found falls back to the nearest parent.
+Only for messages, never for meaning. The house style (one key a line) is what it follows; a key inside an inline table
+or a list over several lines resolves to the line on which that begins.
 """
 
-from __future__ import annotations
-
+import re
 from typing import Any
 
 Path = tuple[str | int, ...]
 
+_HEADER = re.compile(r"^\s*(\[\[?)\s*([^\[\]]+?)\s*\]\]?\s*(?:#.*)?$")
+_NAME = r"""(?:[A-Za-z0-9_-]+|"[^"]*"|'[^']*')"""
+_KEY = re.compile(rf"^\s*({_NAME}(?:\s*\.\s*{_NAME})*)\s*=(.*)$")
+_PART = re.compile(_NAME)
+_TEXTS = re.compile(r'"(?:[^"\\]|\\.)*"|\'[^\']*\'|#.*$')
+
 
 def index(text: str) -> dict[Path, int]:
-    """Path of each key and table -> line number from 1, as ("limit", 1, "entry", 0, "at_most") -> 42."""
-    lines: dict[Path, int] = {(): 1}
+    """path -> line (from 1) of every header and key of a TOML text."""
+    found: dict[Path, int] = {(): 1}
     counts: dict[Path, int] = {}
     table: Path = ()
-    inside = ""
-    for number, raw in enumerate(text.split("\n"), 1):
-        line = raw.strip()
-        if inside:
-            inside = "" if inside in line else inside
-        elif line.startswith("[[") and "]]" in line:
-            table = _element(_keys(line[2 : line.index("]]")]), counts)
-            lines[table] = number
-        elif line.startswith("[") and "]" in line:
-            table = _resolved(_keys(line[1 : line.index("]")]), counts)
-            lines.setdefault(table, number)
-        elif "=" in line and not line.startswith("#"):
-            key, _, value = line.partition("=")
-            lines.setdefault(table + _keys(key), number)
-            for quotes in ('"' * 3, "'" * 3):
-                if value.count(quotes) == 1:
-                    inside = quotes
-    return lines
+    waiting_for = ""
+    depth = 0
+    for number, line in enumerate(text.splitlines(), start=1):
+        if waiting_for:
+            waiting_for = "" if waiting_for in line else waiting_for
+            continue
+        if depth > 0:
+            depth += _open_brackets(line)
+            continue
+        header = _HEADER.match(line)
+        if header:
+            table = _table(header.group(1) == "[[", _parts(header.group(2)), counts)
+            found.setdefault(table, number)
+            continue
+        key = _KEY.match(line)
+        if key:
+            parts = _parts(key.group(1))
+            for length in range(1, len(parts) + 1):
+                found.setdefault((*table, *parts[:length]), number)
+            waiting_for = _unfinished(key.group(2))
+            depth = 0 if waiting_for else max(0, _open_brackets(key.group(2)))
+    return found
 
 
 def line_of(lines: dict[Path, int], path: Path) -> int:
     """The line of a path, or of its nearest parent that has one."""
-    while path not in lines and path:
-        path = path[:-1]
-    return lines.get(path, 1)
+    for length in range(len(path), -1, -1):
+        if path[:length] in lines:
+            return lines[path[:length]]
+    return 1
 
 
 def at(data: Any, path: Path) -> Any:
-    """What stands at a path of parsed data, or None."""
+    """What stands at a path of the parsed data, or None."""
     for one in path:
-        if isinstance(data, dict) and one in data:
+        try:
             data = data[one]
-        elif isinstance(data, list) and isinstance(one, int) and one < len(data):
-            data = data[one]
-        else:
+        except (KeyError, IndexError, TypeError):
             return None
     return data
 
 
-def _resolved(keys: Path, counts: dict[Path, int]) -> Path:
-    """Path of a [table] below arrays of tables: each array means its last element."""
+def _parts(text: str) -> list[str]:
+    return [one.strip("\"'") for one in _PART.findall(text)]
+
+
+def _table(many: bool, parts: list[str], counts: dict[Path, int]) -> Path:
+    """The path of a header: the last of each list of tables on its way, a new one for [[...]]."""
     path: Path = ()
-    for key in keys:
-        path += (key,)
+    for place, part in enumerate(parts):
+        path = (*path, part)
+        if many and place == len(parts) - 1:
+            counts[path] = counts.get(path, -1) + 1
         if path in counts:
-            path += (counts[path] - 1,)
+            path = (*path, counts[path])
     return path
 
 
-def _element(keys: Path, counts: dict[Path, int]) -> Path:
-    """Path of the next element of an array of tables."""
-    path = _resolved(keys[:-1], counts) + (keys[-1],)
-    counts[path] = counts.get(path, 0) + 1
-    return path + (counts[path] - 1,)
+def _unfinished(value: str) -> str:
+    """The quotes for which a text over several lines waits, or ""."""
+    for quotes in ('"""', "'''"):
+        if value.count(quotes) == 1:
+            return quotes
+    return ""
 
 
-def _keys(text: str) -> Path:
-    """The parts of a dotted key; quotes taken off."""
-    parts: list[str | int] = []
-    word = quote = ""
-    for sign in text.strip():
-        if quote:
-            if sign == quote:
-                quote = ""
-            else:
-                word += sign
-        elif sign in "\"'":
-            quote = sign
-        elif sign == ".":
-            parts.append(word.strip())
-            word = ""
-        else:
-            word += sign
-    return (*parts, word.strip())
+def _open_brackets(value: str) -> int:
+    bare = _TEXTS.sub("", value)
+    return bare.count("[") + bare.count("{") - bare.count("]") - bare.count("}")

@@ -11,8 +11,8 @@ from fieldcheck.rulebook.checks_limits import check_entry, limit_scope
 from fieldcheck.rulebook.compiling import Bounds, Json
 from fieldcheck.rulebook.findings import Findings, Source, did_you_mean
 from fieldcheck.rulebook.lines import Path
-from fieldcheck.rulebook.shapes import Limit, LimitEntry, OverlayLimit, Procedure
 from fieldcheck.rulebook.reading import shaped
+from fieldcheck.rulebook.shapes import Limit, LimitEntry, OverlayLimit, Procedure
 from fieldcheck.rulebook.shelf import Shelf
 
 

@@ -8,8 +8,8 @@ from pathlib import Path as FilePath
 
 from fieldcheck.rulebook import shapes
 from fieldcheck.rulebook.findings import Findings, Source
-from fieldcheck.rulebook.shapes import Limit, LimitEntry, Procedure
 from fieldcheck.rulebook.reading import shaped
+from fieldcheck.rulebook.shapes import Limit, LimitEntry, Procedure
 
 FILE = "published.toml"
 HEAD = """# What each dated limit entry said when it was published. Written by: python -m fieldcheck.rulebook publish

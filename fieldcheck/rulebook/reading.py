@@ -67,7 +67,7 @@ def _real(shape: type[BaseModel], source: Source, loc: Path) -> Path:
         if one == "[key]":
             continue
         last = one == loc[-1]
-        inside = isinstance(data, dict) and one in data or isinstance(data, list) and isinstance(one, int)
+        inside = (isinstance(data, dict) and one in data) or (isinstance(data, list) and isinstance(one, int))
         if not inside and not (last and isinstance(data, dict)):
             continue
         path.append(one)

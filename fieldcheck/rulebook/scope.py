@@ -3,6 +3,7 @@
 from fieldcheck.engine import units
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.formulas import names_in
+from fieldcheck.engine.unit_table import NONE
 from fieldcheck.rulebook.formula import RUN_PARTS, Scope, Tree, Type
 from fieldcheck.rulebook.shapes import Limit, Plate, Procedure, Step, Value
 
@@ -28,7 +29,7 @@ def _dimension(quantity: str) -> object:
     try:
         return units.quantity(quantity).dimension
     except FieldcheckError:
-        return units.NONE
+        return NONE
 
 
 def _plate(field: Plate) -> Type:

@@ -83,7 +83,7 @@ def _steps(procedure: Procedure) -> list[str]:
 
 
 def _marks(step: Step) -> str:
-    marks = [step.kind]
+    marks: list[str] = [step.kind]
     if step.depth != "both":
         marks.append(step.depth + " only")
     if step.hold:
@@ -97,7 +97,8 @@ def _details(step: Step) -> list[str]:
     lines: list[str] = []
     if step.kind == "measure":
         times = f", {step.repeats} times" if isinstance(step.repeats, int) and step.repeats > 1 else ""
-        lines.append(f"     Read: {step.quantity} in {_unit(step.unit)}{times}" + (f", {step.meter}" if step.meter else ""))
+        meter = f", {step.meter}" if step.meter else ""
+        lines.append(f"     Read: {step.quantity} in {_unit(step.unit)}{times}{meter}")
     for column in step.columns:
         how = "stopwatch" if column.timing else column.meter
         lines.append(f"     Column: {column.title} ({column.quantity}" + (f", {how})" if how else ")"))
