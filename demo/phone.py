@@ -1,4 +1,4 @@
-"""A phone in plain Python: it enrols, pulls, writes events and pushes them through the same HTTP API as the real one."""
+"""A phone in plain Python: it enrols, pulls, writes events and pushes them through the real phone's HTTP API."""
 
 import hashlib
 import json
@@ -205,7 +205,7 @@ class Hands:
         text = given
         if step["kind"] == "table":
             assert isinstance(given, dict), f"the script has no table for {step['id']}"
-            row, _, name = index.rpartition("/")
+            name = index.rpartition("/")[2]
             column = next(one for one in step["columns"] if one["id"] == name)
             text = given[index] if index in given else given[name]
         assert text is not None, f"the script has no reading for {step['id']}"
