@@ -83,19 +83,20 @@ window.platform = (function () {
     })
   }
 
-  const shown = row => ({device: row.device, seq: row.seq, job: row.job, hash: row.hash, text: row.text})
+  const shown = row => ({device: row.device, seq: row.seq, job: row.job, hash: row.hash, text: row.text,
+    signature: row.signature || ''})                 // of a signing event, by this device
 
   // ---- the chain ----------------------------------------------------------------------------------------------
 
   // Refused with "head moved" when another tab appended since the head was read: read it again, under withLock.
   // The transaction waits for nothing but IndexedDB. Killed before it is complete: nothing happened, draft kept.
-  async function append(text, device, seq, prev, hash, job, draft) {
+  async function append(text, device, seq, prev, hash, job, draft, signature) {
     await transaction(['events', 'heads', 'drafts'], 'readwrite', (stores, answer, stop) => {
       stores.heads.get(String(device)).onsuccess = event => {
         const head = event.target.result || {seq: 0, hash: ''}
         if (head.seq !== Number(seq) - 1 || head.hash !== String(prev)) return stop('head moved')
         stores.events.add({device: String(device), seq: Number(seq), job: String(job), hash: String(hash),
-          text: String(text), sent: 0})
+          text: String(text), sent: 0, signature: String(signature || '')})
         stores.heads.put({seq: Number(seq), hash: String(hash)}, String(device))
         if (draft) stores.drafts.delete(String(draft))
       }

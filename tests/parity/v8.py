@@ -38,9 +38,9 @@ def run_in_v8(cases: list[Any], runner_module: str, phone: Path, folder: Path = 
 
 
 def chunk_names(phone: Path) -> list[str]:
-    """core first, then physics and what lies below it; not the screens, which need a document."""
+    """core first, then the engine and its physics; not the screens, which need a document."""
     named = json.loads((phone / "manifest.json").read_text())["chunks"]
-    return ["core", *sorted(name for name in named if name.split(".")[0] == "physics")]
+    return ["core", *sorted(name for name in named if name.split(".")[0] in ("engine", "physics"))]
 
 
 def shipped(phone: Path, name: str) -> str:

@@ -1,0 +1,1 @@
+"""One room a kind of screen."""

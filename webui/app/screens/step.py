@@ -1,0 +1,485 @@
+"""The screen that every kind of step shares: what to do, the answer or its taking, and the way onward."""
+
+from browser import aio, window
+from fieldcheck.engine import entry, events, judging, procedures, texts, units
+from fieldcheck.engine.errors import FieldcheckError
+from fieldcheck.engine.work import LEFT, TAKEN
+
+from .. import dom, parts, store
+from ..markup import NOTHING, Html, address, esc, h, join, key, link
+from ..screen import Screen
+from . import bench as bench_room
+from . import waiting
+
+platform = window.platform
+DRAFT_AFTER = 300       # milliseconds from the last keystroke until a draft is on its way to the disk
+SAID = {"confirm": "Done", "action": "Done", "photograph": "Photograph taken"}
+
+
+class Step(Screen):
+    """One question: a step at a round, and one index where it is a table.
+
+    mode: "open" (to be answered), "taken", "correct" (answered, being corrected) or "barred" (not its turn).
+    Subclasses give inputs() -> Html, value(arg) -> the event's value (FieldcheckError refuses it), and may give
+    quick = True where the next screen may come at once when nothing is judged.
+    """
+
+    label = "Take"
+    quick = False
+    stale_on_change = False
+
+    def __init__(self, place, bench, instance, index, correcting, draft):
+        Screen.__init__(self, place)
+        self.bench = bench
+        self.instance = instance
+        self.step = instance.step
+        self.index = index
+        self.column = bench_room.column_of(self.step, index)
+        self.slot_key = events.slot_key(self.step["id"], instance.round, index)
+        self.draft_name = bench.job.id + "/" + bench.item.id + "/" + self.slot_key
+        self.draft = draft
+        self.timer = None
+        self.judged = []
+        self.refused = None
+        self.supply = self.step["supply"]
+        self.entries = len(bench.flow.open_entries)
+        self.name = self.step["title"]
+        self.mode = self._mode(correcting)
+        self._set_thumb()
+
+    def _mode(self, correcting):
+        answer = self.answer()
+        if answer is not None and not answer.left:
+            return "correct" if correcting else "taken"
+        return "open" if self.instance.ready or self.instance.state == LEFT else "barred"
+
+    def _set_thumb(self):
+        if self.mode in ("open", "correct"):
+            self.thumb = (self.label, "take")
+        else:
+            self.thumb = ("Next", "next")
+
+    def answer(self):
+        """The Answer of this slot, or None."""
+        return self.bench.work.answers.get(self.slot_key)
+
+    # ---- what is seen
+
+    def body(self):
+        self.ruler = self.ruler_html()
+        step = self.step
+        number = self.instance.round
+        when = "as found" if step["phase"] == "as found" and number == 0 else \
+            "after service " + str(number) if number > 0 else step["phase"]
+        return h("div.screen.step", h("p.path", link(self.bench.title(), self.bench.place(), "plain"), ", " + when),
+                 h("h1", {"id": "title"}, step["title"], self.title_end()),
+                 h("p.hold", "Hold point: nothing after it before it is done") if self.instance.hold else NOTHING,
+                 h("p.do", step["text"]),
+                 self.drawing(), self.aborts(), self.entry_words(),
+                 h("div", {"id": "work"}, self.work()),
+                 h("details.background", h("summary", "Why"), h("p", step["why"])) if step.get("why") else NOTHING,
+                 h("div", {"id": "more"}, self.more()))
+
+    def title_end(self):
+        """What follows the title: row and column of a table."""
+        if self.step["kind"] != "table" or not self.index:
+            return None
+        return h("span.cell", " " + bench_room.row_of(self.index) + ", " + self.column.get("title", ""))
+
+    def drawing(self):
+        """The step's drawing, with its words."""
+        name = self.step.get("drawing")
+        source = dom.picture(name + ".svg") if name else ""
+        return h("img.drawing", {"src": source, "alt": WORDS.get(name, "")}) if source else NOTHING
+
+    def aborts(self):
+        """The limits at which the step is broken off."""
+        rows = [h("p.abort", "Stop: " + one["text"] + " " + value_words(one)) for one in self.step.get("abort") or []]
+        return join(rows)
+
+    def entry_words(self):
+        """What the step opens or restores."""
+        opens = self.step.get("opens")
+        if opens:
+            return h("p.opens", "Opens an entry: " + opens["text"])
+        if self.step.get("restores"):
+            return h("p.opens", "Closes the open entry")
+        return NOTHING
+
+    def work(self):
+        """The changing part: inputs, or what was taken and what it means."""
+        if self.mode == "barred":
+            current = self.bench.flow.current
+            text = "Its turn comes later."
+            return h("p.later", text, " ", link("Now: " + current.step["title"], step_place(self.bench, current),
+                                                "plain") if current is not None else NOTHING)
+        if self.mode == "taken":
+            return self.taken()
+        answer = self.answer()
+        left = h("p.left", "Not done: " + answer.left) if answer is not None and answer.left else NOTHING
+        return join([left, self.inputs(), self.reason_field() if self.mode == "correct" else NOTHING,
+                     h("p.refusal", {"id": "refusal", "role": "alert"}, "")])
+
+    def inputs(self):
+        """What is needed to answer."""
+        return NOTHING
+
+    def reason_field(self):
+        """Why an answer is corrected."""
+        from ..markup import field, options
+        reasons = [("typing slip", "Typing slip"), ("read again", "Read again"), ("wrong meter or range",
+                   "Wrong meter or range"), ("other", "Another reason")]
+        return join([options("Why it is corrected", "reason", reasons, self.draft.get("reason") or "typing slip"),
+                     field("In words", "reason-words", self.draft.get("reason-words") or "")])
+
+    def taken(self):
+        """What was taken and what it means."""
+        answer = self.answer()
+        shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value, self.bench.work)),
+                 self.meter_words(answer.value)]
+        self.judged = self.find_judged()
+        shown.append(self.statements())
+        slot = self.bench.slot(self.slot_key)
+        if slot is not None and len(slot.history) > 1:
+            shown.append(history(slot, self.step, self.column, self.bench.work))
+        return join(shown)
+
+    def find_judged(self):
+        """The verdicts to show with this answer."""
+        if self.step["kind"] in ("nameplate", "photograph", "note") or self.step["id"] == procedures.SUPPLY:
+            return []
+        row = bench_room.row_of(self.index) if self.step["kind"] == "table" else ""
+        return self.bench.judged(self.step["id"], self.instance.round, row)
+
+    def statements(self):
+        """Each verdict with its sign; the first with its scale."""
+        work = self.bench.work
+        said = []
+        quiet = []
+        phase = "as found" if self.instance.round == 0 and self.step["phase"] == "as found" else ""
+        for one in self.judged:
+            if one.verdict.value is None:
+                quiet.append(one)
+                continue
+            last = self.bench.last_value(one)
+            said.append(parts.statement(work, one, phase))
+            said.append(parts.verdict_scale(work, one, self.found_value(one), last))
+            said.append(h("p.note", {"id": "distance-" + one.key}, distance_words(work, one, last)))
+        for one in quiet[:2]:
+            said.append(h("p.note", one.limit["label"] + (" " + one.row if one.row not in ("", "?") else "")
+                          + ": " + one.verdict.reason))
+        return join(said)
+
+    def found_value(self, judged):
+        """The as-found value of a limit (SI) to draw beside the one after service, or None."""
+        if judged.round == 0:
+            return None
+        found = judging.judge(self.bench.work, judged.limit, judged.key, judged.row, 0)
+        return found.verdict.value if not found.verdict.bound else None
+
+    def meter_words(self, value):
+        """With which meter it was read."""
+        meter = self.bench.work.meters.get(value.get("meter") or "") if isinstance(value, dict) else None
+        if meter is None:
+            return NOTHING
+        return h("p.note", meter.tag + " " + meter.name + ", " + (value.get("function") or "")
+                 + (", " + value["range"] if value.get("range") else ""))
+
+    def more(self):
+        """The quieter keys."""
+        keys = []
+        if self.mode == "taken" and self.step["kind"] != "nameplate" or self.mode == "taken":
+            keys.append(("Correct", "correct", ""))
+        if self.mode == "open" and self.step["kind"] != "nameplate":
+            keys.append(("Not done", "left", ""))
+        keys += [("Defect", "defect", ""), ("Part used", "part", "")]
+        return parts.more(*keys)
+
+    def ruler_html(self):
+        """The ruler of the item, with the other items of the job as long ticks and what is waiting."""
+        ids = [item.id for item in self.bench.job.items_in_order()]
+        place = ids.index(self.bench.item.id)
+        return parts.ruler(self.bench.flow, self.instance_now(), (place, len(ids) - place - 1), waiting.shown())
+
+    def instance_now(self):
+        """The present instance in the present flow."""
+        return self.bench.flow.find(self.instance.key)
+
+    def shown(self):
+        waiting.keep_counting()
+
+    # ---- drafts
+
+    def keep(self, name, value):
+        """Notes a half-done answer; it is on the disk soon after the last keystroke."""
+        self.draft[name] = value
+        dom.cancel(self.timer)
+        self.timer = dom.later(DRAFT_AFTER, self.save_draft)
+
+    def save_draft(self, *_):
+        self.timer = None
+        if self.mode in ("open", "correct"):
+            aio.run(platform.putDraft(self.draft_name, texts.write(self.draft)))
+
+    def leave(self):
+        if self.timer is not None:
+            dom.cancel(self.timer)
+            self.save_draft()
+
+    def typed(self, name, text):
+        self.keep(name, text)
+
+    # ---- taking
+
+    def value(self, arg):
+        """The value of the event; FieldcheckError when it cannot be taken."""
+        return {"done": True}
+
+    def on_take(self, arg):
+        try:
+            value = self.value(arg)
+        except FieldcheckError as error:
+            self.refuse(error)
+            return
+        self.commit(value)
+
+    def refuse(self, error):
+        """Says why an answer cannot be taken; what was typed stands."""
+        self.refused = error
+        picks = [key(text, "pick", text, "unit") for text in getattr(error, "choices", ())]
+        dom.fill("refusal", join([h("span", error.what), " ", h("span.note", error.mend), picks]))
+
+    def commit(self, value):
+        """Takes the answer: at once into the work and onto the glass, then to the disk."""
+        dom.cancel(self.timer)
+        self.timer = None
+        corrects, reason = "", ""
+        if self.mode == "correct":
+            corrects = self.bench.slot(self.slot_key).event.hash
+            reason = dom.chosen("reason")
+            words = dom.value("reason-words").strip()
+            reason = (words if reason == "other" else reason + (": " + words if words else "")) or "no reason given"
+        self.mode = "taken"
+        self.bench.answer(self.step["id"], self.instance.round, self.index, self.step["kind"], value, self.spoken,
+                          corrects, reason, self.draft_name)
+        self.after_taking()
+
+    def spoken(self):
+        """(statement, printed) that goes into the event: the first verdict that this step feeds."""
+        self.judged = self.find_judged()
+        if not self.judged or self.judged[0].verdict.value is None:
+            return "", ""
+        first = self.judged[0]
+        return first.verdict.statement, judging.printed(self.bench.work, first)
+
+    def after_taking(self):
+        """Shows what it means; where it means nothing yet, goes on."""
+        said = [one for one in self.judged if one.verdict.value is not None]
+        bad = [one for one in said if one.verdict.statement in ("fail", "conditional fail")]
+        buzz(2 if bad else 1)
+        if self.quick and not said:
+            aio.run(self.on_next(""))
+            return
+        dom.fill("work", self.taken())
+        self._set_thumb()
+        dom.text("thumb", self.thumb[0])
+        dom.attribute("thumb", "data-do", self.thumb[1])
+        dom.focus("thumb")
+        if said:
+            dom.say(said[0].verdict.statement)
+        window.performance.mark("fieldcheck taken")
+        dom.after_paint(self.after_glass)
+
+    def after_glass(self, *_):
+        """What may wait until the statement is seen: the path, the ruler, the band."""
+        if self.main.screen is not self:
+            return
+        self.entries = len(self.bench.flow.open_entries)
+        self.ruler = self.ruler_html()
+        self.main.top()
+        self.main.foot()
+        dom.focus("thumb")
+        dom.fill("more", self.more())
+
+    # ---- keys
+
+    async def on_next(self, arg):
+        dom.go(await next_place(self.bench, self))
+
+    def on_correct(self, arg):
+        dom.go(address(step_place(self.bench, self.instance, self.index) + ["correct"]))
+
+    def on_left(self, arg):
+        dom.go(address(step_place(self.bench, self.instance, self.index) + ["left"]))
+
+    def on_defect(self, arg):
+        dom.go(address(self.bench.place("defect")))
+
+    def on_part(self, arg):
+        dom.go(address(self.bench.place("part")))
+
+    def on_list(self, arg):
+        dom.go(address(self.bench.place()))
+
+    def on_why(self, limit_key):
+        """Opens the reason of a verdict, built when first opened."""
+        for one in self.judged:
+            if one.key == limit_key:
+                place = "why-" + limit_key
+                found = dom.find(place)
+                opening = bool(found.hidden)
+                if opening and not found.innerHTML:
+                    dom.fill(place, parts.explanation(judging.explained(self.bench.work, one)))
+                found.hidden = not opening
+
+
+def buzz(times):
+    """One short buzz, or two."""
+    if store.rules.get("quiet"):
+        return
+    platform.buzz(40)
+    if times == 2:
+        dom.later(140, second_buzz)
+
+
+def second_buzz(*_):
+    platform.buzz(40)
+
+
+def step_place(bench, instance, index=None):
+    """Address (segments) of an instance, at one index where it has several."""
+    if index is None:
+        index = procedures.slot_for(instance)[2]
+    if instance.step["kind"] == "table":
+        return bench.place("step", instance.key, "cell", index)
+    return bench.place("step", instance.key)
+
+
+async def next_place(bench, screen=None):
+    """Address (text) of what comes next in an item: the next open cell, the next step, or the item's page."""
+    if screen is not None and screen.step["kind"] == "table":
+        _, missing, _ = procedures.status(bench.work, screen.instance)
+        if missing:
+            return address(step_place(bench, screen.instance, missing[0]))
+    current = bench.flow.current
+    if current is not None:
+        return address(step_place(bench, current))
+    if bench.flow.complete and bench.outcome() is None:
+        return address(bench.place("outcome"))
+    return address(bench.place())
+
+
+# ---- words --------------------------------------------------------------------------------------------------------
+
+WORDS = {
+    "four-wire": "The current probes, bars, lie outside; the potential probes, rings, touch finger and stud inside "
+                 "them; the measuring path runs through the contact.",
+    "contact": "One probe on the finger, the other on its stud, as near the contact as they reach.",
+    "drum": "The drum seen from the pawl: fingers rest on the contact segments, the pawl turns it one tooth a pulse.",
+    "bypass": "The breaker with a link across its terminals, and the dummy load in series.",
+    "rectifier-cell": "One plate of the rectifier: the counter-electrode faces the spring washer; probes on its two "
+                      "tags.",
+    "gear-points": "Where oil belongs: both ends of each shaft, a trace on the teeth, none on the commutator.",
+}
+
+
+def value_words(one):
+    """The limit of an abort: "5 A"."""
+    at_most = str(one.get("at_most") or "")
+    unit = one.get("unit")
+    return "above " + at_most + ("\u202f" + units.symbol_text(units.unit(unit)) if unit else "") if at_most else ""
+
+
+def unit_text(name):
+    """Printed form of a unit key; "" where there is none."""
+    if not name:
+        return ""
+    try:
+        return units.symbol_text(units.unit(name))
+    except FieldcheckError:
+        return name
+
+
+def choice_label(choices, chosen):
+    """The label of a choice's id."""
+    for one in choices or ():
+        if one["id"] == chosen:
+            return one["label"]
+    return "Not known" if chosen == "unknown" else chosen
+
+
+def answer_text(step, column, value, work):
+    """An answer in words: "20.4 mΩ", "Silver", "Done"."""
+    kind = step["kind"]
+    if value.get("unknown"):
+        return "Not marked"
+    if kind == "choice" or "choice" in value:
+        choices = step.get("choices") or (step.get("field") or {}).get("choices")
+        return choice_label(choices, value["choice"])
+    if kind == "sequence":
+        if value.get("mode") == "count":
+            return str(value["pulses"]) + " pulses, from " + value["start"] + " to " + value["end"]
+        return value["start"] + ": " + " ".join(value["seen"])
+    if kind == "nameplate":
+        return value["text"] + unit_end(value.get("unit"), value["text"])
+    if "text" in value:
+        shown = "; ".join(value["texts"]) if value.get("texts") else value["text"]
+        return shown + unit_end(value.get("unit") or column.get("unit"), shown)
+    remark = value.get("remark") or ""
+    return (SAID.get(kind) or "Done") + (", " + remark if remark else "")
+
+
+def unit_end(unit, text):
+    """The unit after a value that was typed without one."""
+    if not text or text[-1] not in "0123456789.," or not unit:
+        return ""
+    return "\u202f" + unit_text(unit)
+
+
+def history(slot, step, column, work):
+    """All that was ever answered here, newest last; nothing is erased."""
+    rows = []
+    for event in slot.history:
+        at = store.local_time(store.instant(event.at))[11:16]
+        who = store.person_name(event.person)
+        if event.type == "step.left":
+            text = "not done: " + event.data["reason"]
+        else:
+            text = answer_text(step, column, event.data["value"], work)
+        reason = event.data.get("reason") if event.type == "answer.corrected" else ""
+        counts = event is slot.event
+        words = at + " " + text + (", " + reason if reason else "") + (", " + who if who else "")
+        rows.append(h("li", words if counts else h("s", words)))
+    return h("details.background", h("summary", "Corrected; all entries"), h("ol.history", rows))
+
+
+def distance_words(work, judged, last):
+    """How far the value is from its limit, and the previous season's value; only after Take."""
+    verdict = judged.verdict
+    if verdict.value is None or verdict.bound:
+        return ""
+    unit, convert = judging.display(work, judged)
+    gaps = []
+    for edge in (verdict.at_least, verdict.at_most):
+        if edge is not None:
+            gaps.append(abs(convert(edge) - convert(verdict.value)))
+    from fieldcheck.engine import figures
+    words = []
+    if gaps:
+        words.append(figures.significant(min(gaps), 2) + ("\u202f" + unit if unit else "") + " from the limit")
+    if last is not None:
+        words.append("last time " + figures.significant(convert(last), 3) + ("\u202f" + unit if unit else ""))
+    return "; ".join(words)
+
+
+def raw_text(text):
+    """Text for inside an SVG."""
+    return Html(esc(text))
+
+
+def read_entry(text, column, unit):
+    """The engine's Entry of what was typed for a step or column."""
+    return entry.read(text, column["quantity"], default_unit=unit or column.get("unit"))
+
+
+TAKEN_STATES = (TAKEN, LEFT)
