@@ -15,6 +15,7 @@ READS = ("GET", "HEAD", "OPTIONS")
 FORM_BYTES = 1 << 20
 BATCH_BYTES = 8 << 20
 BLOB_BYTES = 32 << 20
+RECORD_BYTES = 30 << 20
 
 POLICY = "; ".join((
     "default-src 'none'", "script-src 'self'", "style-src 'self'", "img-src 'self' blob: data:",
@@ -65,6 +66,8 @@ def check() -> None:
 def _limit(path: str) -> int:
     if path.startswith("/api/blobs/"):
         return BLOB_BYTES
+    if path == "/records/verify":
+        return RECORD_BYTES
     return BATCH_BYTES if path.startswith("/api/") else FORM_BYTES
 
 

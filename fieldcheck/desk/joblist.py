@@ -18,7 +18,8 @@ def stage(job: Any) -> str:
     """open, in hand (handed out or begun), signed, or recorded."""
     if job.signing() is not None:
         return RECORDED if job.records and job.records[-1].data.get("of_root") == job.signing().data["root"] else SIGNED
-    return HANDED if job.handed.event is not None else OPEN
+    begun = any(item.slots or item.outcomes.history for item in job.items.values())
+    return HANDED if begun or job.handed.history else OPEN
 
 
 def name_of(state: Any, noun: str, key: str) -> str:

@@ -18,6 +18,11 @@ from fieldcheck.keys.devices import DeviceKey, load_device_key, make_device_key
 
 DESK_KEY = Path("keys", "desk.pem")
 READ_AT_ONCE = 2000
+USUAL_FUNCTIONS = {
+    "DC voltage": "voltage", "AC voltage": "voltage", "DC current": "current", "AC current": "current",
+    "resistance": "resistance", "insulation resistance": "resistance", "temperature": "temperature",
+    "frequency": "frequency", "time": "time", "force": "force", "length": "length", "capacitance": "capacitance",
+}
 
 
 class Rulebook(Protocol):
@@ -103,6 +108,26 @@ class Workshop:
             if one["id"] == procedure:
                 return self.part(one["part"])
         raise NotFound(f'the rulebook has no procedure "{procedure}"', f"rulebook {rulebook or self.rulebook.digest}")
+
+    def plates(self, kind: str) -> list[dict[str, Any]]:
+        """The nameplate questions of a kind: those of its procedures, each once."""
+        found: dict[str, dict[str, Any]] = {}
+        for one in self.index["procedures"]:
+            if one["kind"] == kind:
+                for plate in self.part(one["part"])["nameplate"]:
+                    found.setdefault(plate["id"], plate)
+        return list(found.values())
+
+    @property
+    def functions(self) -> dict[str, str]:
+        """Every function that a meter may be set to, with its quantity: the usual ones and those of the rulebook."""
+        found = dict(USUAL_FUNCTIONS)
+        for one in self.index["procedures"]:
+            for step in self.part(one["part"])["steps"]:
+                for asked in (step, *(step.get("columns") or ())):
+                    if asked.get("meter") and asked.get("quantity"):
+                        found[asked["meter"]] = asked["quantity"]
+        return found
 
     @property
     def cursor(self) -> int:
