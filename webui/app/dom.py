@@ -21,8 +21,9 @@ def start():
 
 
 def _click(event):
-    target = event.target.closest("[data-do]")
-    if not target:
+    try:
+        target = event.target.closest("[data-do]")
+    except KeyError:                    # Brython's own closest() says so where there is none
         return
     event.preventDefault()
     if target.getAttribute("aria-disabled") == "true":

@@ -22,7 +22,7 @@ async def ask(method, url, body=""):
     """(status, object) of one request; status 0 when nobody answers."""
     answer = window.JSON.parse(await platform.fetchJson(method, url, body, ""))
     code = int(answer.status)
-    text = str(answer.text)
+    text = str(answer.text).strip()
     if code == 0 or not text.startswith("{"):
         return code, None
     return code, store.json(text)
@@ -116,7 +116,8 @@ async def signed_head(seq, digest):
 
 async def push():
     """Hands over this device's events in order; False when the desk cannot be reached or refuses."""
-    rows = [row for row in window.JSON.parse(await platform.unsent()) if str(row.device) == store.own["device"]]
+    unsent = window.JSON.parse(await platform.unsent())
+    rows = [row for row in unsent if str(row.device) == store.own["device"]]    # no await inside: it would not wait
     place = 0
     while place < len(rows):
         batch = rows[place:place + BATCH]

@@ -219,7 +219,7 @@ class Step(Screen):
     def save_draft(self, *_):
         self.timer = None
         if self.mode in ("open", "correct"):
-            aio.run(platform.putDraft(self.draft_name, texts.write(self.draft)))
+            platform.putDraft(self.draft_name, texts.write(self.draft))
 
     def leave(self):
         if self.timer is not None:
