@@ -218,11 +218,16 @@ def _hold(source: Source, path: Path, case: Case, result: Json, findings: Findin
                 findings.add(source, here, f'"{wanted}" is no statement', did_you_mean(wanted, STATEMENTS[:-1]))
             elif limit not in verdicts:
                 findings.add(source, here, f'there is no verdict "{limit}"', did_you_mean(limit, verdicts))
-            elif wanted != verdicts[limit][key] and not (key == "reason" and wanted in verdicts[limit][key]):
+            elif wanted != _plain(verdicts[limit][key]) and not (key == "reason" and wanted in verdicts[limit][key]):
                 got = verdicts[limit]
                 reason = f" ({got['value']}: {got['reason']})" if key != "reason" else ""
                 findings.add(source, here, f"no longer holds: {limit}, {key} is {_said(got[key])}{reason}, not "
                              f"{_said(wanted)}", "correct the rule, or the case if the rule is right")
+
+
+def _plain(text: str) -> str:
+    """Printed text with ordinary spaces before the unit, as a case's author types it."""
+    return text.replace("\u202f", " ")
 
 
 def _said(value: Any) -> str:

@@ -23,7 +23,7 @@ ONLY = {
 }
 """key of a step -> kinds that may have it"""
 
-WITHOUT_METER = ("count", "ratio", "temperature difference", "angle")
+WITHOUT_METER = ("count", "ratio", "temperature difference", "angle", "viscosity", "penetration")
 
 
 def check_steps(source: Source, procedure: Procedure, shelf: Shelf, findings: Findings) -> None:
