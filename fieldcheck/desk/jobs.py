@@ -140,8 +140,12 @@ def _page(shop: Workshop, state: Any, job: Any, filled: forms.Filled | None) -> 
         "jobs/job.html", job=job, data=data, customer=joblist.name_of(state, "customer", data["customer"]),
         site=joblist.name_of(state, "site", data["site"]), kit=jobview.kit_of(shop, state, job, date.today()),
         hand=forms.controls(sheet, filled), errors=len(filled.errors), writer=writer, cursor=shop.cursor,
-        conflicts=jobview.conflicts_of(state, job), **_seen(shop, state, job),
+        conflicts=jobview.conflicts_of(state, job), dates=_dates(data), **_seen(shop, state, job),
     )
+
+
+def _dates(data: dict[str, Any]) -> list[tuple[str, str]]:
+    return [(words, str(data[key])) for key, words in (("received", "Received"), ("due", "Wanted by")) if data.get(key)]
 
 
 def _handed(job: Any) -> dict[str, str]:

@@ -198,14 +198,16 @@ def kit_of(shop: Workshop, state: Any, job: Any, today: date) -> Kit:
     cautions: dict[str, tuple[str, str, str]] = {}
     at_work = waiting = 0
     for item in job.items_in_order():
-        part = shop.procedure(item.procedure, job.opened.data["rulebook"])
-        doing = work.Work(part, item.depth, today.isoformat())
+        try:
+            part = shop.procedure(item.procedure, job.opened.data["rulebook"])
+        except FieldcheckError:
+            continue            # the item itself says that it cannot be shown
         for step in part["steps"]:
             if step.get("depth", "both") in ("both", item.depth):
                 functions += [one["meter"] for one in readings.columns_of(step) if one.get("meter")]
         for one in part["cautions"]:
             cautions[one["id"]] = (one["signal"].upper(), one["title"], one["text"])
-        minutes = part["minutes"][doing.depth]
+        minutes = part["minutes"][item.depth]
         at_work, waiting = at_work + minutes["work"], waiting + minutes["wait"]
     have = [(name, _meters_for(state, name, today)) for name in dict.fromkeys(functions)]
     return Kit([(name, found) for name, found in have if found], [name for name, found in have if not found],
