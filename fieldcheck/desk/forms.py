@@ -16,6 +16,7 @@ Choice = tuple[str, str]                # value sent, words shown
 Check = Callable[[str], str]            # what is wrong with a text, as a sentence; "" when nothing
 MOST_ROWS = 80
 BLANK_ROWS = 2
+FEW = 4                 # columns of a table that is set as narrow as a field
 
 
 @dataclass(frozen=True)
@@ -195,6 +196,7 @@ class Control:
     unknown: bool = False
     word: str = ""
     heads: tuple[str, ...] = ()
+    few: bool = False
     rows: tuple[tuple[Control, ...], ...] = ()
 
 
@@ -216,7 +218,7 @@ def _control(part: Part, shown: Filled) -> Control:
         ))
     heads = tuple(of.label + (f" ({of.hint})" if of.hint else "") for of in part.fields)
     return Control("table", part.name, part.label, error=shown.errors.get(part.name, ""), hint=part.hint,
-                   word=part.word, heads=heads, rows=tuple(rows))
+                   word=part.word, heads=heads, few=len(heads) < FEW, rows=tuple(rows))
 
 
 def _drawn(of: Field, name: str, label: str, shown: Filled) -> Control:

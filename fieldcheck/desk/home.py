@@ -28,7 +28,8 @@ def page() -> ResponseReturnValue:
     """Jobs that are not done with, and meters that want attention."""
     with workshop().reading() as state:
         jobs = joblist.jobs_of(state)
-        groups = [(title, listing(COLUMNS, [job_row(state, job) for job in jobs if joblist.stage(job) in stages], {}))
+        groups = [(title, listing(COLUMNS, [job_row(state, job) for job in jobs if joblist.stage(job) in stages],
+                                  {"sort": request.args.get("sort", "")}))
                   for title, stages in (("In hand", (joblist.HANDED,)), ("Open, not handed out", (joblist.OPEN,)),
                                         ("Signed, record to be made", (joblist.SIGNED,)))]
         disputes = [(url_for("jobs.one", id=job.id), job.opened.data["number"]) for job in jobs if job.conflicts()]

@@ -140,7 +140,7 @@ def _page(shop: Workshop, state: Any, job: Any, filled: forms.Filled | None) -> 
         "jobs/job.html", job=job, data=data, customer=joblist.name_of(state, "customer", data["customer"]),
         site=joblist.name_of(state, "site", data["site"]), kit=jobview.kit_of(shop, state, job, date.today()),
         hand=forms.controls(sheet, filled), errors=len(filled.errors), writer=writer, cursor=shop.cursor,
-        conflicts=jobview.conflicts_of(state, job), dates=_dates(data), **_seen(shop, state, job),
+        conflicts=jobview.conflicts_of(shop, state, job), dates=_dates(data), **_seen(shop, state, job),
     )
 
 

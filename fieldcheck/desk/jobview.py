@@ -169,14 +169,29 @@ def said(event: Any) -> str:
     return ", ".join(f"{key} {value[key]}" for key in value) or event.type
 
 
-def conflicts_of(state: Any, job: Any) -> list[Conflict]:
+def conflicts_of(shop: Workshop, state: Any, job: Any) -> list[Conflict]:
     """What a person must decide."""
     found = []
-    for _, key, slot in job.conflicts():
+    for item, key, slot in job.conflicts():
         rivals = [Rival(one.hash, said(one), joblist.name_of(state, "device", one.device),
                         one.at[:16].replace("T", " ")) for one in slot.rivals]
-        found.append(Conflict(key.replace("|", " ").strip(), rivals))
+        found.append(Conflict(_question(shop, state, job, job.items[item], key), rivals))
     return found
+
+
+def _question(shop: Workshop, state: Any, job: Any, item: Any, key: str) -> str:
+    """What the answers were given to, in the procedure's words: "Drum controller, Resistance, as found"."""
+    name = joblist.name_of(state, "equipment", item.equipment)
+    if key == "outcome":
+        return f"{name}, outcome"
+    step, number, index = key.split("|", 2)
+    try:
+        part = shop.procedure(item.procedure, job.opened.data["rulebook"])
+        titles = {one["id"]: one["title"] for one in part["steps"]}
+    except FieldcheckError:
+        titles = {}
+    when = "as found" if number == "0" else f"after service {number}"
+    return ", ".join(word for word in (name, titles.get(step, step), index, when) if word)
 
 
 # ---- the kit list

@@ -82,7 +82,7 @@ def configuration(door: socket.socket) -> Config:
     config.bind = [f"fd://{door.detach()}"]       # Hypercorn closes it
     config.accesslog = None
     config.errorlog = logging.getLogger("hypercorn")
-    config.loglevel = "WARNING"
+    config.errorlog.setLevel(logging.WARNING)
     config.include_server_header = False
     config.graceful_timeout = SECONDS_TO_FINISH
     config.wsgi_max_body_size = BLOB_BYTES + 1      # one more, so that the desk itself says that it is too large

@@ -377,7 +377,7 @@ def test_two_answers_are_shown_and_decided_with_a_reason(shop):
     for text in ("31.2", "48.9"):
         Worker(shop, job).read(shop, text)
     page = shop.desk.get(f"/jobs/{job}")
-    assert "Two answers to one question: drop 0" in visible(page)
+    assert "Two answers to one question: Drum controller, Resistance, as found" in visible(page)
     assert "somebody must decide" in visible(shop.desk.get("/"))
     keep = re.search(r'value="([0-9a-f]{64})"', page.text).group(1)
     assert shop.desk.post(f"/jobs/{job}/decide", data={"keep": keep, **shop.by}).status_code == 422
