@@ -205,7 +205,7 @@ def name_text(work, lookup, name):
         return name
     if isinstance(value, str):
         return value
-    if isinstance(value, (list, formulas.Bound)):
+    if isinstance(value, (list, dict, formulas.Bound)):     # a column, a run of the drum, a bound: no one number
         return name
     unit = unit_of(work, name)
     plain = value.value if isinstance(value, Measured) else value
