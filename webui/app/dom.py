@@ -1,4 +1,4 @@
-"""The only room that knows the document: three places of the page, one listener a kind of event, timers, the address."""
+"""The only room that knows the document: the frame of the page, its listeners, timers, the address."""
 
 from browser import document, window
 

@@ -4,6 +4,7 @@ Nothing here is in the way of the work: without the desk everything stays on the
 """
 
 from browser import aio, window
+
 from fieldcheck.engine import texts
 
 from . import dom, pen, store

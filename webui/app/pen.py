@@ -4,6 +4,7 @@ No event exists before its transaction is complete; killed before that, nothing 
 """
 
 from browser import window
+
 from fieldcheck.engine import events
 
 from . import store

@@ -1,6 +1,7 @@
 """What this phone knows: every event folded, the rulebooks, who works here, and what is half done."""
 
 from browser import window
+
 from fieldcheck.engine import events, texts
 
 platform = window.platform

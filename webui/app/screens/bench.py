@@ -1,9 +1,10 @@
 """One item in hand: its Work kept in memory, answers put into it at once and written to the disk behind them."""
 
 from browser import aio, window
+
 from fieldcheck.engine import events, judging, outcomes, procedures, readings, verdicts
 from fieldcheck.engine.physics import registry
-from fieldcheck.engine.work import Answer, answer_of, of_item
+from fieldcheck.engine.work import TAKEN, Answer, answer_of, limit_names, of_item
 
 from .. import pen, store
 
@@ -22,6 +23,7 @@ class Bench:
         self.work = of_item(store.state, job, item, part, store.today())
         self._flow = None
         self.before = {}
+        self.names = {}
 
     @property
     def flow(self):
@@ -103,13 +105,16 @@ class Bench:
 
     # ---- verdicts
 
-    def judged(self, step_id, number, row=""):
-        """The verdicts that a step feeds, at a round: list of Judged, those that say something first."""
+    def judged(self, step_id, number, row="", column=""):
+        """The verdicts that a step (or one column of a table) feeds, at a round: list of Judged, those that say
+        something first."""
         work = self.work
         found = []
         wanted = work.limits_on(step_id)
         for limit in self.part["limits"]:
             if limit["id"] not in wanted or not judging.holds(work, limit):
+                continue
+            if column and step_id + "." + column not in self.names_of(limit):
                 continue
             for key, limit_row in judging.keys_of(work, limit):
                 if row and limit_row not in ("", "?", row):
@@ -117,6 +122,12 @@ class Bench:
                 found.append(judging.judge(work, limit, key, limit_row, number))
         said = [one for one in found if one.verdict.statement != verdicts.NOT_JUDGED]
         return said + [one for one in found if one.verdict.statement == verdicts.NOT_JUDGED]
+
+    def names_of(self, limit):
+        """Every name that a limit depends on."""
+        if limit["id"] not in self.names:
+            self.names[limit["id"]] = limit_names(self.part, limit)
+        return self.names[limit["id"]]
 
     def closing(self):
         """(flow, rows, best, reasons, allowed) of the item."""
@@ -129,6 +140,14 @@ class Bench:
         """The outcome given, as event data, or None."""
         given = self.item.outcomes.event
         return given.data if given is not None else None
+
+    def supply_now(self):
+        """The supply state that the item was last brought to, by the path."""
+        supply = procedures.ISOLATED
+        for one in self.flow.instances:
+            if one.state == TAKEN:
+                supply = one.supply
+        return supply
 
     # ---- what must come before a step
 

@@ -20,18 +20,19 @@ class Cautions(Screen):
     def __init__(self, place, bench, supply, cautions):
         Screen.__init__(self, place)
         self.bench = bench
-        self.supply = supply
+        self.supply = bench.supply_now()
+        self.wanted = supply
         self.cautions = cautions
         self.entries = len(bench.flow.open_entries)
         self.thumb = ("Read and understood", "agree")
 
     def body(self):
-        return h("div.screen", h("p.path", self.bench.title()), h("h1", "Before: " + self.supply),
+        return h("div.screen", h("p.path", self.bench.title()), h("h1", "Before: " + self.wanted),
                  [parts.signal(one) for one in self.cautions],
                  h("p.note", "Local codes and licensed practice come first."))
 
     async def on_agree(self, arg):
-        await self.bench.note("caution.acknowledged", {"supply": self.supply,
+        await self.bench.note("caution.acknowledged", {"supply": self.wanted,
                                                        "cautions": [one["id"] for one in self.cautions]})
         await self.main.arrive()
 
@@ -44,7 +45,7 @@ class NotAllowed(Screen):
     def __init__(self, place, bench):
         Screen.__init__(self, place)
         self.bench = bench
-        self.supply = "mains live"
+        self.supply = bench.supply_now()
         self.thumb = ("Another person", "who")
 
     def body(self):

@@ -33,13 +33,18 @@ class Job(Screen):
             str(done) + " of " + count_text(len(self.job.items), "item", "items") + " closed"
         return h("div.screen", h("p.path", link("Jobs", [], "plain")), h("h1", self.name),
                  h("p.do", site_text(self.job)), h("p", data.get("reason") or ""), h("p.state", head),
-                 h("p.warn", count_text(self.missing, "item has", "items have")
-                   + " rules that are not on this phone yet; open the page near the desk.") if self.missing else NOTHING,
-                 self.conflicts(),
+                 self.missing_words(), self.conflicts(),
                  h("ul.rows", [h("li", self.row(one)) for one in self.benches]),
                  h("div.more", link("Conditions", ["job", self.job.id, "conditions"], "quiet-key"),
                    link("Add equipment", ["job", self.job.id, "add"], "quiet-key"),
                    link("Customer", ["job", self.job.id, "customer"], "quiet-key")))
+
+    def missing_words(self):
+        """Items whose rules have not arrived."""
+        if not self.missing:
+            return NOTHING
+        return h("p.warn", count_text(self.missing, "item has", "items have")
+                 + " rules that are not on this phone yet; open the page near the desk.")
 
     def conflicts(self):
         """Two answers to one question wait for a person at the desk."""
@@ -85,7 +90,7 @@ class Item(Screen):
         self.bench = bench
         self.name = bench.title()
         current = bench.flow.current
-        self.supply = current.supply if current is not None else last_supply(bench)
+        self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
         if bench.outcome() is None:
             self.thumb = ("Go on", "go") if current is not None else ("Outcome", "outcome")
@@ -148,14 +153,3 @@ class Item(Screen):
 
     def shown(self):
         waiting.keep_counting()
-
-
-def last_supply(bench):
-    """The supply state that the item was last brought to."""
-    supply = "isolated"
-    for one in bench.flow.instances:
-        if one.state == "taken":
-            supply = one.supply
-    return supply
-
-

@@ -20,7 +20,7 @@ class Left(Screen):
         self.bench = bench
         self.instance = instance
         self.index = index
-        self.supply = instance.step["supply"]
+        self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
         self.name = "Not done"
         self.thumb = ("Not done", "leave")

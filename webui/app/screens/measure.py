@@ -1,14 +1,16 @@
 """A reading: one big field, unit keys, the scale with its moving pointer, the meter."""
 
 from browser import aio
+
 from fieldcheck.engine import entry, formulas, judging, readings, scale, units
 from fieldcheck.engine.errors import EntryError, FieldcheckError
 from fieldcheck.engine.measured import value_of
 
 from .. import dom, store
-from ..markup import NOTHING, Html, h, join, key
+from ..markup import NOTHING, Html, address, h, join, key
 from . import bench as bench_room
-from .step import Step, unit_text
+from .step import Step, step_place
+from .words import answer_text, unit_text
 
 POINTER_AFTER = 150     # milliseconds from the last keystroke until the pointer moves
 STATE_WORDS = {"overdue": "calibration overdue", "unknown": "no calibration date", "unchecked": "not checked today"}
@@ -43,12 +45,15 @@ class Measure(Step):
     def inputs(self):
         if self.index == "?":
             return h("p.later", "How many rows there are is asked on the nameplate first.")
-        wanted = h("p.note", str(self.repeats) + " readings, a space or ; between them") if self.repeats > 1 else NOTHING
+        wanted = NOTHING
+        if self.repeats > 1:
+            wanted = h("p.note", str(self.repeats) + " readings, a space or ; between them")
         quantity = self.column["quantity"]
         label = quantity[:1].upper() + quantity[1:]
         return join([
             h("p.entry", h("label", {"for": "entry"}, label),
-              h("input", {"id": "entry", "name": "entry", "value": self.draft.get("entry") or "",
+              h("input" + (".long" if self.repeats > 1 else ""), {
+                          "id": "entry", "name": "entry", "value": self.draft.get("entry") or "",
                           "inputmode": "decimal", "autocomplete": "off", "enterkeyhint": "done",
                           "aria-describedby": "refusal"}),
               h("span.unit-now", {"id": "unit-now"}, unit_text(self.unit))),
@@ -91,8 +96,8 @@ class Measure(Step):
         unit_name = self.column.get("unit") or ""
         shown = units.unit(unit_name) if unit_name else None
         low, high = self.rails()
-        if number is None and low is None and high is None:
-            return NOTHING
+        if number is None and not bound:
+            return NOTHING                  # an empty scale would only suggest a value
 
         def turned(value):
             if value is None:
@@ -136,7 +141,7 @@ class Measure(Step):
         else:
             words = meter.tag + " " + meter.name + (", " + self.range if self.range else "")
         state = state_of(self.bench, self.meter)
-        return join([key([h("span", words), h("span.note", self.function), h("span.mark", state) if state else None],
+        return join([key([h("span", words), h("span.note", self.function), h("span.flagged", state) if state else None],
                          "meters", "", "meter-now", aria_expanded="false")])
 
     def on_meters(self, arg):
@@ -149,7 +154,7 @@ class Measure(Step):
                 if one["function"] == self.function:
                     ranges = one.get("ranges") or []
             rows.append(key([h("span.where", data["tag"] + " " + data["name"]), h("span.note", "range by size"),
-                             h("span.mark", state) if state else None], "meter", data["meter"] + " ", "row"))
+                             h("span.flagged", state) if state else None], "meter", data["meter"] + " ", "row"))
             rows.append(h("div.ranges", [key(one["name"], "meter", data["meter"] + " " + one["name"], "unit")
                                          for one in ranges]))
         dom.fill("meter", h("div.choices", {"role": "group", "aria-label": "Meter"}, rows))
@@ -310,7 +315,6 @@ def size_of(name):
 
 def table_view(bench, instance, index):
     """The table as it stands; each cell leads to its screen."""
-    from .step import answer_text, step_place
     step = instance.step
     columns = step["columns"]
     head = h("tr", h("th", {"scope": "col"}, ""), [h("th", {"scope": "col"}, one["title"],
@@ -326,11 +330,14 @@ def table_view(bench, instance, index):
         for column in columns:
             here = row + "/" + column["id"]
             answer = bench.work.at(step["id"], instance.round, here)
-            text = "·" if answer is None else "–" if answer.left else answer_text(step, column, answer.value, bench.work)
-            from ..markup import link
+            text = "·"
+            if answer is not None:
+                text = "–" if answer.left else answer_text(step, column, answer.value)
+            if here == index:
+                cells.append(h("td.here", text))
+                continue
             words = row + " " + column["title"] + (": " + text if answer is not None else ", to do")
-            cells.append(h("td.here" if here == index else "td",
-                           h("span", text) if here == index else
-                           link(h("span", {"aria-label": words}, text), step_place(bench, instance, here), "cell-link")))
+            cells.append(h("td", h("a.cell-link", {"href": address(step_place(bench, instance, here)),
+                                                   "aria-label": words}, text)))
         rows.append(h("tr", h("th", {"scope": "row"}, row), cells))
     return h("div.wide", h("table.cells", h("thead", head), h("tbody", rows)))

@@ -1,6 +1,7 @@
 """The outcome of an item, within what the engine allows; defects, parts used, cool-downs."""
 
 from browser import window
+
 from fieldcheck.engine import judging, outcomes
 
 from .. import dom, parts
@@ -23,7 +24,7 @@ class Outcome(Screen):
         Screen.__init__(self, place)
         self.bench = bench
         self.flow, self.rows, self.best, self.reasons, self.allowed = bench.closing()
-        self.supply = "isolated"
+        self.supply = bench.supply_now()
         self.entries = len(self.flow.open_entries)
         self.thumb = ("Give this outcome", "give")
         self.judged = [left or found for _, found, left in self.rows]

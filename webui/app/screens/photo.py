@@ -1,6 +1,7 @@
 """A photograph: taken with the phone's camera, kept as it is, named by its digest."""
 
 from browser import window
+
 from fieldcheck.engine.errors import EntryError
 
 from .. import dom

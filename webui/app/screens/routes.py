@@ -12,7 +12,8 @@ platform = window.platform
 KINDS = {"confirm": simple.Confirm, "choice": simple.Choice, "note": simple.Note, "action": simple.Action,
          "measure": Measure, "table": Measure, "sequence": sequence.Sequence, "timing": timing.Timing,
          "photograph": photo.Photo}
-ITEM_SCREENS = {"outcome": outcome.Outcome, "defect": outcome.Defect, "part": outcome.PartUsed, "wait": outcome.CoolDown}
+ITEM_SCREENS = {"outcome": outcome.Outcome, "defect": outcome.Defect, "part": outcome.PartUsed,
+                "wait": outcome.CoolDown}
 
 
 async def screen_for(place):

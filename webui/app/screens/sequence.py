@@ -76,7 +76,8 @@ class Sequence(Step):
         """Count mode: so many pulses, and what the drum shows at the end."""
         return join([h("p.ask", "Started at " + self.draft["start"] + ". Count the pulses."),
                      h("p.stopwatch", {"id": "count"}, str(self.draft.get("pulses") or 0)),
-                     h("div.helpers", [key("Pulse", "pulse", "", "helper wide"), key("One less", "less", "", "helper")]),
+                     h("div.helpers", [key("Pulse", "pulse", "", "helper.wide"),
+                                       key("One less", "less", "", "helper")]),
                      field("Pulses", "pulses", str(self.draft.get("pulses") or ""), inputmode="numeric"),
                      h("p.ask", "Shown at the end: ", h("strong", {"id": "end"}, self.draft.get("end") or "?")),
                      self.pads("end-at")])

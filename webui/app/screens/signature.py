@@ -1,6 +1,7 @@
 """The customer's acknowledgement, and the signing of a job by the person who did it."""
 
 from browser import window
+
 from fieldcheck.engine import chain
 
 from .. import dom, pen, store
@@ -66,7 +67,7 @@ def svg_text(strokes):
             points.append(points[0])
         paths.append("M" + "L".join(points))
     return ('<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 350 160"><path d="' + "".join(paths)
-            + '" fill="none" stroke="currentColor" stroke-width="2" stroke-linecap="round" stroke-linejoin="round"/></svg>')
+            + '" fill="none" stroke="currentColor" stroke-width="2" stroke-linecap="round"/></svg>')
 
 
 def join_svg(strokes):

@@ -106,8 +106,8 @@ class Plate(Measure):
         Measure.__init__(self, place, bench, instance, index, correcting, draft)
 
     def inputs(self):
-        unknown = key(["Not marked, not known", h("span.note", unknown_words(self.step["field"]))], "unknown", "", "row")
-        return join([Measure.inputs(self), unknown])
+        words = h("span.note", unknown_words(self.step["field"]))
+        return join([Measure.inputs(self), key(["Not marked, not known", words], "unknown", "", "meter-now")])
 
     def helper_keys(self):
         return NOTHING

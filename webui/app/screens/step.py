@@ -1,19 +1,20 @@
 """The screen that every kind of step shares: what to do, the answer or its taking, and the way onward."""
 
 from browser import aio, window
-from fieldcheck.engine import entry, events, judging, procedures, texts, units
+
+from fieldcheck.engine import events, judging, procedures, texts
 from fieldcheck.engine.errors import FieldcheckError
-from fieldcheck.engine.work import LEFT, TAKEN
+from fieldcheck.engine.work import LEFT
 
 from .. import dom, parts, store
-from ..markup import NOTHING, Html, address, esc, h, join, key, link
+from ..markup import NOTHING, address, field, h, join, key, link, options
 from ..screen import Screen
 from . import bench as bench_room
 from . import waiting
+from .words import WORDS, answer_text, distance_words, history, value_words
 
 platform = window.platform
 DRAFT_AFTER = 300       # milliseconds from the last keystroke until a draft is on its way to the disk
-SAID = {"confirm": "Done", "action": "Done", "photograph": "Photograph taken"}
 
 
 class Step(Screen):
@@ -41,7 +42,7 @@ class Step(Screen):
         self.timer = None
         self.judged = []
         self.refused = None
-        self.supply = self.step["supply"]
+        self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
         self.name = self.step["title"]
         self.mode = self._mode(correcting)
@@ -126,7 +127,6 @@ class Step(Screen):
 
     def reason_field(self):
         """Why an answer is corrected."""
-        from ..markup import field, options
         reasons = [("typing slip", "Typing slip"), ("read again", "Read again"), ("wrong meter or range",
                    "Wrong meter or range"), ("other", "Another reason")]
         return join([options("Why it is corrected", "reason", reasons, self.draft.get("reason") or "typing slip"),
@@ -135,21 +135,23 @@ class Step(Screen):
     def taken(self):
         """What was taken and what it means."""
         answer = self.answer()
-        shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value, self.bench.work)),
+        shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value)),
                  self.meter_words(answer.value)]
         self.judged = self.find_judged()
         shown.append(self.statements())
         slot = self.bench.slot(self.slot_key)
         if slot is not None and len(slot.history) > 1:
-            shown.append(history(slot, self.step, self.column, self.bench.work))
+            shown.append(history(slot, self.step, self.column))
         return join(shown)
 
     def find_judged(self):
         """The verdicts to show with this answer."""
         if self.step["kind"] in ("nameplate", "photograph", "note") or self.step["id"] == procedures.SUPPLY:
             return []
-        row = bench_room.row_of(self.index) if self.step["kind"] == "table" else ""
-        return self.bench.judged(self.step["id"], self.instance.round, row)
+        if self.step["kind"] == "table":
+            return self.bench.judged(self.step["id"], self.instance.round, bench_room.row_of(self.index),
+                                     self.column["id"])
+        return self.bench.judged(self.step["id"], self.instance.round)
 
     def statements(self):
         """Each verdict with its sign; the first with its scale."""
@@ -295,6 +297,7 @@ class Step(Screen):
         if self.main.screen is not self:
             return
         self.entries = len(self.bench.flow.open_entries)
+        self.supply = self.bench.supply_now()
         self.ruler = self.ruler_html()
         self.main.top()
         self.main.foot()
@@ -367,119 +370,3 @@ async def next_place(bench, screen=None):
     if bench.flow.complete and bench.outcome() is None:
         return address(bench.place("outcome"))
     return address(bench.place())
-
-
-# ---- words --------------------------------------------------------------------------------------------------------
-
-WORDS = {
-    "four-wire": "The current probes, bars, lie outside; the potential probes, rings, touch finger and stud inside "
-                 "them; the measuring path runs through the contact.",
-    "contact": "One probe on the finger, the other on its stud, as near the contact as they reach.",
-    "drum": "The drum seen from the pawl: fingers rest on the contact segments, the pawl turns it one tooth a pulse.",
-    "bypass": "The breaker with a link across its terminals, and the dummy load in series.",
-    "rectifier-cell": "One plate of the rectifier: the counter-electrode faces the spring washer; probes on its two "
-                      "tags.",
-    "gear-points": "Where oil belongs: both ends of each shaft, a trace on the teeth, none on the commutator.",
-}
-
-
-def value_words(one):
-    """The limit of an abort: "5 A"."""
-    at_most = str(one.get("at_most") or "")
-    unit = one.get("unit")
-    return "above " + at_most + ("\u202f" + units.symbol_text(units.unit(unit)) if unit else "") if at_most else ""
-
-
-def unit_text(name):
-    """Printed form of a unit key; "" where there is none."""
-    if not name:
-        return ""
-    try:
-        return units.symbol_text(units.unit(name))
-    except FieldcheckError:
-        return name
-
-
-def choice_label(choices, chosen):
-    """The label of a choice's id."""
-    for one in choices or ():
-        if one["id"] == chosen:
-            return one["label"]
-    return "Not known" if chosen == "unknown" else chosen
-
-
-def answer_text(step, column, value, work):
-    """An answer in words: "20.4 mΩ", "Silver", "Done"."""
-    kind = step["kind"]
-    if value.get("unknown"):
-        return "Not marked"
-    if kind == "choice" or "choice" in value:
-        choices = step.get("choices") or (step.get("field") or {}).get("choices")
-        return choice_label(choices, value["choice"])
-    if kind == "sequence":
-        if value.get("mode") == "count":
-            return str(value["pulses"]) + " pulses, from " + value["start"] + " to " + value["end"]
-        return value["start"] + ": " + " ".join(value["seen"])
-    if kind == "nameplate":
-        return value["text"] + unit_end(value.get("unit"), value["text"])
-    if "text" in value:
-        shown = "; ".join(value["texts"]) if value.get("texts") else value["text"]
-        return shown + unit_end(value.get("unit") or column.get("unit"), shown)
-    remark = value.get("remark") or ""
-    return (SAID.get(kind) or "Done") + (", " + remark if remark else "")
-
-
-def unit_end(unit, text):
-    """The unit after a value that was typed without one."""
-    if not text or text[-1] not in "0123456789.," or not unit:
-        return ""
-    return "\u202f" + unit_text(unit)
-
-
-def history(slot, step, column, work):
-    """All that was ever answered here, newest last; nothing is erased."""
-    rows = []
-    for event in slot.history:
-        at = store.local_time(store.instant(event.at))[11:16]
-        who = store.person_name(event.person)
-        if event.type == "step.left":
-            text = "not done: " + event.data["reason"]
-        else:
-            text = answer_text(step, column, event.data["value"], work)
-        reason = event.data.get("reason") if event.type == "answer.corrected" else ""
-        counts = event is slot.event
-        words = at + " " + text + (", " + reason if reason else "") + (", " + who if who else "")
-        rows.append(h("li", words if counts else h("s", words)))
-    return h("details.background", h("summary", "Corrected; all entries"), h("ol.history", rows))
-
-
-def distance_words(work, judged, last):
-    """How far the value is from its limit, and the previous season's value; only after Take."""
-    verdict = judged.verdict
-    if verdict.value is None or verdict.bound:
-        return ""
-    unit, convert = judging.display(work, judged)
-    gaps = []
-    for edge in (verdict.at_least, verdict.at_most):
-        if edge is not None:
-            gaps.append(abs(convert(edge) - convert(verdict.value)))
-    from fieldcheck.engine import figures
-    words = []
-    if gaps:
-        words.append(figures.significant(min(gaps), 2) + ("\u202f" + unit if unit else "") + " from the limit")
-    if last is not None:
-        words.append("last time " + figures.significant(convert(last), 3) + ("\u202f" + unit if unit else ""))
-    return "; ".join(words)
-
-
-def raw_text(text):
-    """Text for inside an SVG."""
-    return Html(esc(text))
-
-
-def read_entry(text, column, unit):
-    """The engine's Entry of what was typed for a step or column."""
-    return entry.read(text, column["quantity"], default_unit=unit or column.get("unit"))
-
-
-TAKEN_STATES = (TAKEN, LEFT)

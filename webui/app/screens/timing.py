@@ -1,6 +1,7 @@
 """The stopwatch: start, splits, stop; it goes on while another item is worked, and through a reload."""
 
 from browser import window
+
 from fieldcheck.engine import entry
 from fieldcheck.engine.errors import EntryError
 
