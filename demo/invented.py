@@ -54,6 +54,8 @@ METERS = {
                 _range("10 A", "1 mA", "0.5 %", "5")]},
             {"function": "AC current", "quantity": "current", "ranges": [
                 _range("5 A", "0.1 mA", "1.0 %", "10"), _range("20 A", "10 mA", "1.5 %", "5")]},
+            {"function": "low resistance", "quantity": "resistance", "leads": "0.02 ohm", "ranges": [
+                _range("5 ohm", "1 mohm", "0.5 %", "10")]},
             {"function": "resistance", "quantity": "resistance", "leads": "0.02 ohm", "ranges": [
                 _range("50 ohm", "0.01 ohm", "0.5 %", "10"), _range("500 ohm", "0.1 ohm", "1 %", "2"),
                 _range("5 kohm", "1 ohm", "1 %", "2"), _range("50 kohm", "10 ohm", "1 %", "2")]},

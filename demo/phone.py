@@ -150,7 +150,7 @@ class Hands:
         self.meters = meters
         self.times: dict[str, int] = {}
 
-    def work(self) -> None:
+    def play(self) -> None:
         """Answers step after step until the path ends."""
         for _ in range(400):
             made, flow = self.phone.flow(self.job, self.item)

@@ -25,7 +25,8 @@ def final_round(work, flow):
 def rows(work, flow):
     """Every limit of the item as found and as left: list of (key, found Judged or None, left Judged or None).
 
-    found is None for what only the closing steps show; left is None where nothing was serviced (as found stands).
+    found is None for what only the closing steps show; left is None where no reading was taken again after service:
+    as found stands.
     """
     result = []
     last = final_round(work, flow)
@@ -36,8 +37,18 @@ def rows(work, flow):
         for key, row in judging.keys_of(work, limit):
             found = judging.judge(work, limit, key, row, 0) if has_found else None
             left = judging.judge(work, limit, key, row, last) if last > 0 or not has_found else None
+            if has_found and left is not None and not (left.stale or taken_again(left)):
+                left = None
             result.append((key, found, left))
     return result
+
+
+def taken_again(judged):
+    """True when a reading behind a verdict is of a round of service."""
+    for _, _, number, _ in judged.lookup.used:
+        if number > 0:
+            return True
+    return False
 
 
 def bounded(work, flow, judged_rows=None):

@@ -243,8 +243,8 @@ class Lookup:
         return {"layout": layout_of(self.work, step)["positions"], "start": value["start"], "seen": value["seen"]}
 
 
-UNMETERED = ("count", "ratio", "temperature difference")
-"""Quantities that a person counts or reads without a meter of the workshop."""
+UNMETERED = ("count", "ratio", "temperature difference", "viscosity", "penetration")
+"""Quantities that a person counts, or reads off a scale or a data sheet, without a meter of the workshop."""
 
 
 def layout_of(work, step):

@@ -216,6 +216,8 @@ TABLE = {
         ("viscosity_index_from_references = index_from_references",
          "nu_40:viscosity, nu_100:viscosity, l_40:viscosity, h_40:viscosity", "ratio", "READ",
          "ASTM D2270 (checks 11.3)", "viscosity index from the two reference oils"),
+        ("compatibility_rank", "base:text, material:text", "count", "READ-2", "trade journal (checks 11.5)",
+         "how a base oil goes with a material: 0 ok, 1 extreme caution, 2 unknown, 3 never"),
     ),
     "contacts": (
         ("four_wire_resistance", "v_plus:voltage, v_minus:voltage, i:current", "resistance", "READ-2", "checks 5.3",

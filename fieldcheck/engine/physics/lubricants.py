@@ -45,6 +45,20 @@ ORDER_OF_HARM = ("ok", "care", "unknown", "never")
 """How a base goes with a material, mildest first; "unknown" is worse than "care": nobody has looked."""
 
 
+# base -> word -> materials: what rules/materials.toml holds, for formulas (a test keeps the two alike). Plastics and
+# rubbers: trade journal (checks 11.5, READ-2); metals, fibre, mineral oil on rubber: PRACTICE. Else: unknown.
+METALS = "brass steel zinc-die-cast nickel-silver "
+PLASTICS = "nylon acetal abs polystyrene polycarbonate pvc phenolic polyester ppo polysulfone "
+COMPATIBILITY = {
+    "mineral": {"ok": METALS + "phenolic fibre", "never": "natural-rubber"},
+    "synthetic-hydrocarbon": {"ok": METALS + PLASTICS, "care": "other-plastic",
+                              "never": "natural-rubber neoprene butyl buna-s other-rubber"},
+    "ester": {"ok": METALS, "care": "polycarbonate polystyrene pvc polyester ppo polysulfone natural-rubber neoprene "
+                                    "butyl buna-s", "never": "abs"},
+    "silicone": {"ok": METALS + PLASTICS, "care": "other-plastic"},
+    "fluoroether": {"ok": METALS + PLASTICS, "care": "other-plastic"},
+}
+
 # --- grades ---------------------------------------------------------------------------------------------------------
 
 
@@ -207,6 +221,22 @@ def goes_with(matrix, base, materials):
             raise OutOfRange("no such word for compatibility: " + word, "matrix", "use " + ", ".join(ORDER_OF_HARM))
         worst = max(worst, ORDER_OF_HARM.index(word))
     return ORDER_OF_HARM[worst]
+
+
+def compatibility_rank(base, material):
+    """0 ok, 1 extreme caution, 2 unknown, 3 never: place in ORDER_OF_HARM of a base oil on one material of a train.
+
+    base, material: ids of rules/materials.toml; the material "none" is not there, so nothing harms it: 0.
+    A base or material that nobody has looked at is unknown, 2. Source: checks 11.5 (READ-2).
+    """
+    if material == "none":
+        return 0.0
+    for known in COMPATIBILITY:
+        if known == base:
+            for word in COMPATIBILITY[known]:
+                if material in COMPATIBILITY[known][word].split():
+                    return float(ORDER_OF_HARM.index(word))
+    return float(ORDER_OF_HARM.index("unknown"))
 
 
 def viscosity_on_shelf(lubricant, t_work):
