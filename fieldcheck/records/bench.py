@@ -5,15 +5,14 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Any
 
-from fieldcheck.engine import events, judging, procedures, readings, scale, verdicts
-from fieldcheck.engine.errors import FieldcheckError
+from fieldcheck.engine import judging, readings, scale, verdicts
 from fieldcheck.engine.explain import GLOSSES
-from fieldcheck.records.hand import NOT_NOTED, Hand, identities_text, spaced
+from fieldcheck.records.answers import NOT_STEPS, answer_text, choice_text, left_out, untouched
+from fieldcheck.records.hand import Hand, identities_text, spaced
 from fieldcheck.records.replay import ItemAgain
 from fieldcheck.records.words import marked_figures
 
 Data = dict[str, Any]  # JSON of many kinds
-UNCERTAIN_TAGS = ("PRACTICE", "MEM?")
 
 
 @dataclass(frozen=True)
@@ -28,7 +27,8 @@ class Cell:
 
 @dataclass(frozen=True)
 class Row:
-    """One limit: as found over as left. scale: SVG; margin: lines beside it (citation, tag, gloss)."""
+    """One limit: as found over as left. scale: SVG; margin: lines beside it (citation, tag, gloss);
+    stands: nothing was serviced, so that as found stands as the final value."""
 
     key: str
     label: str
@@ -38,6 +38,7 @@ class Row:
     scale: str
     margin: list[str]
     safety: bool
+    stands: bool
 
 
 @dataclass(frozen=True)
@@ -53,9 +54,10 @@ class Taken:
 
 @dataclass(frozen=True)
 class Section:
-    """One item. facts: [(label, text)]; service, left_out, defects, parts: lines."""
+    """One item. facts: [(label, text)]; service, left_out, defects, parts: lines; examined: something was answered."""
 
     number: int
+    examined: bool
     title: str
     identities: str
     facts: list[tuple[str, str]]
@@ -80,7 +82,7 @@ def section(hand: Hand, one: ItemAgain, number: int) -> Section:
     given = one.item.outcomes.event
     outcome = given.data if given is not None else {}
     return Section(
-        number=number, title=str(equipment.get("name") or "Equipment without a name"),
+        number=number, examined=not untouched(one), title=str(equipment.get("name") or "Equipment without a name"),
         identities=identities_text(equipment) or "no identity noted", facts=_facts(hand, one, equipment),
         condition=_condition(hand, one), outcome=outcome.get("outcome") or "no outcome given",
         outcome_reason=outcome.get("reason") or "", restrictions=outcome.get("restrictions") or "",
@@ -113,17 +115,10 @@ def _plate(hand: Hand, field: Data, given: Data | None) -> str:
         if unknown["then"] == "not judged":
             return "not marked; what depends on it is not judged"
         assumed = unknown.get("choice") or hand.amount(unknown)
-        return f"not marked; {_choice(field, assumed)} assumed ({unknown.get('tag', 'PRACTICE')})"
+        return f"not marked; {choice_text(field, assumed)} assumed ({unknown.get('tag', 'PRACTICE')})"
     if given.get("choice"):
-        return _choice(field, given["choice"])
+        return choice_text(field, given["choice"])
     return hand.amount({"unit": field.get("unit"), **{key: value for key, value in given.items() if value}})
-
-
-def _choice(where: Data, chosen: str) -> str:
-    for one in where.get("choices") or []:
-        if one["id"] == chosen:
-            return str(one["label"])
-    return chosen
 
 
 def _condition(hand: Hand, one: ItemAgain) -> str:
@@ -135,7 +130,7 @@ def _condition(hand: Hand, one: ItemAgain) -> str:
         if found is not None:
             counts[verdicts.as_found_word(found.verdict.statement).split(",")[0]] += 1
     told = [f"{number} {word}" for word, number in counts.items() if number]
-    looks = [f"{step['title']}: {_choice(step, answer.value['choice'])}" for step, answer in _choices(one)]
+    looks = [f"{step['title']}: {choice_text(step, answer.value['choice'])}" for step, answer in _choices(one)]
     limits = "Of the limits judged as found: " + ", ".join(told) + "." if told else "No limit was judged as found."
     return " ".join([limits, *[hand.number(text) + "." for text in looks]])
 
@@ -165,7 +160,7 @@ def _row(hand: Hand, one: ItemAgain, key: str, found: Any, left: Any) -> Row:
         key=key, label=label, accepted=hand.number(explained["limit"]) or "no limit: what it needs is missing",
         found=_cell(hand, one, found, as_found=True) if found is not None else None,
         left=_cell(hand, one, last, as_found=False), scale=_scale(hand, one, found, left),
-        margin=margin_of(hand, explained), safety=bool(last.limit.get("safety")),
+        margin=margin_of(hand, explained), safety=bool(last.limit.get("safety")), stands=left is None,
     )
 
 
@@ -201,7 +196,7 @@ def _taken(hand: Hand, one: ItemAgain) -> list[Taken]:
     found = []
     for instance in one.flow.instances:
         step = instance.step
-        if step["id"] in (procedures.SUPPLY, "nameplate") or step["kind"] in ("confirm", "action", "photograph"):
+        if step["id"] in NOT_STEPS or step["kind"] in ("confirm", "action", "photograph"):
             continue
         answers = [(index, one.work.at(step["id"], instance.round, index)) for index in instance.indexes]
         taken = {index: answer for index, answer in answers if answer is not None and not answer.left}
@@ -215,30 +210,15 @@ def _block(hand: Hand, one: ItemAgain, instance: Any, taken: dict[str, Any]) -> 
     phase = step["phase"] if instance.round == 0 else f"after service {instance.round}"
     by = _by(hand, taken)
     if step["kind"] != "table":
-        lines = [[_answer(hand, step, step, answer.value)] for answer in taken.values()]
+        lines = [[answer_text(hand, step, step, answer.value)] for answer in taken.values()]
         return Taken(step["title"], phase, [], lines, by)
     columns = step["columns"]
     lines = []
     for row in readings.rows_of(one.work, step):
         cells = [taken.get(readings.index_of(row, column["id"])) for column in columns]
-        lines.append([row, *["—" if cell is None else _answer(hand, step, column, cell.value)
+        lines.append([row, *["—" if cell is None else answer_text(hand, step, column, cell.value)
                              for column, cell in zip(columns, cells, strict=True)]])
     return Taken(step["title"], phase, ["", *[column["title"] for column in columns]], lines, by)
-
-
-def _answer(hand: Hand, step: Data, column: Data, value: Data) -> str:
-    kind = step["kind"]
-    if kind == "choice":
-        return _choice(step, value["choice"])
-    if kind == "note":
-        return str(value["text"])
-    if kind == "sequence":
-        shown = f"from {value['start']}: " + " ".join(value["seen"])
-        pulses = f", {value['pulses']} pulses" if value.get("pulses") else ""
-        return shown + pulses + (f", ended on {value['end']}" if value.get("end") else "")
-    text = hand.amount({"unit": column.get("unit"), **{key: part for key, part in value.items() if part}})
-    laps = [hand.amount({"unit": "s", **lap}) for lap in value.get("laps") or []]
-    return text + (" (laps " + ", ".join(laps) + ")" if laps else "")
 
 
 def _by(hand: Hand, taken: dict[str, Any]) -> str:
@@ -272,76 +252,9 @@ def _service(hand: Hand, one: ItemAgain) -> list[str]:
     return lines
 
 
-def untouched(one: ItemAgain) -> bool:
-    """True when nothing at all was answered for an item."""
-    return not any(slot.event is not None for slot in one.item.slots.values())
-
-
-def left_out(hand: Hand, one: ItemAgain) -> list[str]:
-    """Every step or cell not done, with its reason, in the order in which it was left; one line for a whole item."""
-    if untouched(one):
-        return ["every step of the method"]
-    left = [slot.event for slot in one.item.slots.values() if slot.event is not None and slot.event.type == "step.left"]
-    lines = [f"{title_of(hand, one, slot_key(event))}: {event.data['reason'] or 'no reason given'}"
-             for event in sorted(left, key=lambda event: event.order)]
-    reached = {instance.step["id"] for instance in one.flow.instances}
-    for step in one.part["steps"]:
-        needed = procedures.included(one.work, step) and not step.get("corrective")
-        if needed and step["id"] not in reached:
-            lines.append(f"{step['title']}: not reached")
-    for instance in one.flow.instances:
-        if instance.state == procedures.TO_DO and instance.step["id"] not in (procedures.SUPPLY, "nameplate"):
-            lines.append(f"{instance.step['title']}: not taken")
-    return list(dict.fromkeys(hand.number(line) for line in lines))
-
-
 def _defect(hand: Hand, event: Any) -> str:
     return f"{event.data['level']}: {event.data['what']} ({hand.who(event)}, {hand.when(event)})"
 
 
 def _part(hand: Hand, event: Any) -> str:
     return f"{event.data['name']}, {hand.number(str(event.data['amount']))}{spaced(event.data.get('unit') or '')}"
-
-
-def title_of(hand: Hand, one: ItemAgain, slot: str) -> str:
-    """The step of a slot key in words."""
-    step, number, index = slot.split("|", 2)
-    titles = {each["id"]: each["title"] for each in one.part["steps"]}
-    field = readings.nameplate_field(one.work, index) if step == "nameplate" else None
-    if step == procedures.SUPPLY:
-        return "Supply state before " + titles.get(index, index)
-    name = field["label"] if field is not None else titles.get(step, step) + _cell_name(one, step, index)
-    return name + (f", after service {number}" if number != "0" else "")
-
-
-def _cell_name(one: ItemAgain, step: str, index: str) -> str:
-    """A table's cell in words: ", row 1, V forward"."""
-    if not index:
-        return ""
-    row, _, column = index.partition("/")
-    columns = {each["id"]: each["title"] for each in (one.work.steps.get(step) or {}).get("columns") or []}
-    return f", row {row}" + (f", {columns.get(column, column)}" if column else "")
-
-
-def value_text(hand: Hand, one: ItemAgain, event: Any) -> str:
-    """What an answering event says, as one text."""
-    if event.type == "step.left":
-        return "not done: " + (event.data["reason"] or "no reason given")
-    kind, value = event.data["kind"], event.data["value"]
-    if kind == "photograph":
-        return f"photograph {value['blob'][:16]}…"
-    if value.get("unknown"):
-        return "not marked"
-    if kind in ("confirm", "action"):
-        return "done"
-    try:
-        step = one.work.step(event.data["step"]) if event.data["step"] != "nameplate" else {"kind": "measure"}
-        return _answer(hand, {**step, "kind": "measure" if kind in ("table", "timing", "nameplate") else kind},
-                       {}, value)
-    except (FieldcheckError, KeyError):
-        return str(value.get("text") or value.get("choice") or NOT_NOTED)
-
-
-def slot_key(event: Any) -> str:
-    """The slot that an answering event belongs to."""
-    return str(events.slot_key(event.data["step"], event.data["round"], event.data["index"]))

@@ -6,7 +6,8 @@ from dataclasses import dataclass
 from typing import Any
 
 from fieldcheck.engine import judging, meters, readings
-from fieldcheck.records.bench import margin_of, slot_key, title_of, untouched, value_text
+from fieldcheck.records.answers import slot_key, title_of, untouched, value_text
+from fieldcheck.records.bench import margin_of
 from fieldcheck.records.hand import NOT_NOTED, Hand
 from fieldcheck.records.letter import Signature, signature
 from fieldcheck.records.replay import ItemAgain
@@ -100,8 +101,7 @@ def _argument(hand: Hand, one: ItemAgain, found: Any, left: Any, number: int) ->
     lines = [
         ("Verdict", f"{said['value'] or 'no value'}: {said['statement']}, {said['reason']}"),
         ("As found", _as_found(one, found) if left is not None and found is not None else ""),
-        ("Formula", said["formula"]),
-        ("With numbers", said["formula_with_numbers"] if said["formula"] else ""),
+        ("Formula", f"{said['formula']} = {said['formula_with_numbers']}" if said["formula"] else ""),
         ("Corrections", "; ".join([*said["corrections"], *said["notes"]])),
         ("Rule", f"{rule}; {said['guard']}" if said["guard"] else rule),
         ("Uncertainty", said["coverage"]),
@@ -251,13 +251,17 @@ def changes(hand: Hand) -> list[Change]:
                 found.append((new.order, Change(hand.when(new), hand.who(new), what, value_text(hand, one, old),
                                                 value_text(hand, one, new), reason)))
             if slot.rivals:
-                texts = " against ".join(value_text(hand, one, event) for event in slot.rivals)
-                found.append((slot.rivals[-1].order, Change("", "", f"Item {number}, {title_of(hand, one, key)}", texts,
-                                                            "undecided", "two answers, neither of which saw the other")))
+                found.append((slot.rivals[-1].order, _undecided(hand, one, number, key, slot)))
     for event in hand.again.job.decisions:
         found.append((event.order, Change(hand.when(event), hand.who(event), "Decision between two answers", "",
                                           f"kept {event.data['keep'][:16]}…", event.data["reason"])))
     return [change for _, change in sorted(found, key=lambda pair: pair[0])]
+
+
+def _undecided(hand: Hand, one: ItemAgain, number: int, key: str, slot: Any) -> Change:
+    texts = " against ".join(value_text(hand, one, event) for event in slot.rivals)
+    return Change("", "", f"Item {number}, {title_of(hand, one, key)}", texts, "undecided",
+                  "two answers, neither of which saw the other")
 
 
 def course(hand: Hand) -> list[tuple[str, str, str]]:

@@ -6,8 +6,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Any
 
-from fieldcheck.records import bench, closing, letter
+from fieldcheck.records import bench, closing
 from fieldcheck.records.hand import Hand, mark_of
+from fieldcheck.records.letter import Letter, Signature
+from fieldcheck.records.letter import letter as letter_of
 from fieldcheck.records.replay import Again, replay
 from fieldcheck.records.words import time_text
 
@@ -55,7 +57,7 @@ class Document:
     title: str
     issued: str
     mark: str
-    letter: letter.Letter
+    letter: Letter
     sections: list[bench.Section]
     statements: tuple[tuple[str, str], ...]
     decision_rule: str
@@ -69,7 +71,7 @@ class Document:
     course: list[tuple[str, str, str]]
     history: list[str]
     own_results: str
-    signatures: list[letter.Signature]
+    signatures: list[Signature]
     proofs: Proofs
 
     def blobs(self) -> list[str]:
@@ -90,7 +92,7 @@ def build(data: Data, digest: str, again: Again | None = None) -> Document:
     return Document(
         number=data["number"], title="Record of inspection and service",
         issued=time_text(data["issued"], data["offset"]), mark=hand.mark,
-        letter=letter.letter(hand, sections, left), sections=sections, statements=STATEMENTS,
+        letter=letter_of(hand, sections, left), sections=sections, statements=STATEMENTS,
         decision_rule=DECISION_RULE,
         arguments=[text for number, one in enumerate(again.items, 1) for text in closing.arguments(hand, one, number)],
         conditions=closing.conditions(hand), instruments=closing.instruments(hand), safety=SAFETY,

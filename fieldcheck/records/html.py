@@ -82,8 +82,8 @@ def _drawing(svg: str) -> str:
 
 
 def _sign(statement: str) -> str:
-    return scale.sign(statement).replace("currentColor", METALS[statement]).replace(
-        'role="img"', f'role="img" aria-label="{statement}"', 1)
+    svg: str = scale.sign(statement).replace("currentColor", METALS[statement])
+    return svg.replace('role="img"', f'role="img" aria-label="{statement}"', 1)
 
 
 def _qr(document: Document) -> str:

@@ -7,7 +7,8 @@ from dataclasses import dataclass
 from typing import Any
 
 from fieldcheck.engine import outcomes, verdicts
-from fieldcheck.records.bench import Section, title_of
+from fieldcheck.records.answers import title_of
+from fieldcheck.records.bench import Section
 from fieldcheck.records.hand import NOT_NOTED, Hand
 from fieldcheck.records.words import counted, day_text, listed, time_text
 
@@ -128,7 +129,8 @@ def _todo(sections: list[Section]) -> list[str]:
     for section in sections:
         who = f"Item {section.number}, {section.title}: "
         if section.outcome == outcomes.UNSERVICEABLE:
-            lines.append(who + "take it out of use" + (f" ({section.outcome_reason})" if section.outcome_reason else ""))
+            why = f" ({section.outcome_reason})" if section.outcome_reason else ""
+            lines.append(who + "take it out of use" + why)
         if section.restrictions:
             lines.append(who + section.restrictions)
         elif section.outcome == outcomes.RESTRICTED:

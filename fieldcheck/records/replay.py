@@ -92,3 +92,13 @@ def _said(one: ItemAgain, judged: Any) -> Data | None:
         return None
     explained: Data = judging.explained(one.work, judged)
     return {**explained, "printed": judging.printed(one.work, judged), "round": str(judged.round)}
+
+
+def overrated(said: list[Data]) -> str:
+    """The first item that was given a better outcome than its readings allow, in a sentence; "" when none was."""
+    order = outcomes.OUTCOMES
+    for number, one in enumerate(said, 1):
+        if one["outcome"] in order and order.index(one["outcome"]) < order.index(one["best_outcome"]):
+            return (f'item {number} was called "{one["outcome"]}", its readings allow at best '
+                    f'"{one["best_outcome"]}": {"; ".join(one["reasons"])}')
+    return ""

@@ -73,8 +73,8 @@ PART: dict[str, Any] = {
         step("run", "confirm", "close", "low voltage live", "Run with the cover on"),
     ],
     "values": [{"id": "r", "label": "Contact resistance", "quantity": "resistance", "unit": "mohm", "each": "untouched",
-                "formula": ["call", "four_wire_resistance", [["name", "untouched.v_plus"], ["name", "untouched.v_minus"],
-                                                             ["name", "untouched.i"]], {}],
+                "formula": ["call", "four_wire_resistance", [
+                    ["name", "untouched.v_plus"], ["name", "untouched.v_minus"], ["name", "untouched.i"]], {}],
                 "formula_text": "four_wire_resistance(untouched.v_plus, untouched.v_minus, untouched.i)"}],
     "limits": [
         limit("resistance", "Contact resistance", "r", "mohm", {"at_most": ["num", "0.05"]}, each=True,
@@ -244,9 +244,9 @@ class Trial:
         return signed
 
 
-STROKES = (b'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 300 100"><path d="M10 60L40 20L70 80L110 30" fill="none" '
-           b'stroke="#1B1D1F" stroke-width="2"/><path d="M120 70L200 40L280 66" fill="none" stroke="#1B1D1F" '
-           b'stroke-width="2"/></svg>')
+STROKES = (b'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 300 100"><path d="M10 60L40 20L70 80L110 30" '
+           b'fill="none" stroke="#1B1D1F" stroke-width="2"/><path d="M120 70L200 40L280 66" fill="none" '
+           b'stroke="#1B1D1F" stroke-width="2"/></svg>')
 
 
 def photograph() -> bytes:
@@ -258,7 +258,8 @@ def photograph() -> bytes:
 
 def worked_item(trial: Trial, item: str) -> None:
     """Nameplate, cautions, as found with one contact outside, a correction, a step left out, service, as left."""
-    trial.write(trial.job, "caution.acknowledged", {"item": item, "supply": "isolated", "cautions": ["unplugged-first"]})
+    trial.write(trial.job, "caution.acknowledged", {"item": item, "supply": "isolated",
+                                                    "cautions": ["unplugged-first"]})
     trial.answer(item, "nameplate", "nameplate", {"text": "2", "unit": ""}, index="n_contacts")
     trial.answer(item, "nameplate", "nameplate", {"unknown": True}, index="rated")
     trial.done(item, "supply", index="cover_off")
@@ -314,6 +315,7 @@ def full_job(folder: Path, mark: str = "point", customer: str = "Tidewater Model
     worked_item(trial, trial.items[0])
     trial.write(trial.job, "outcome.given", {"item": trial.items[1], "outcome": "not examined", "reason": "no access",
                                              "restrictions": "", "next_due": ""})
-    trial.write(trial.job, "customer.acknowledged", {"state": "signed", "name": "Bo Ferry", "blob": trial.blob(STROKES)})
+    trial.write(trial.job, "customer.acknowledged", {"state": "signed", "name": "Bo Ferry",
+                                                     "blob": trial.blob(STROKES)})
     trial.sign()
     return trial
