@@ -6,10 +6,11 @@ from typing import Any
 from fieldcheck.engine import budgets, entry, explain, figures, formulas, units
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.measured import Measured, influence, value_of
-from fieldcheck.engine.physics.registry import REGISTRY, Function, call
+from fieldcheck.engine.physics.registry import REGISTRY, call
 
 PLUS_MINUS = ("±", "+-", "+/-")
 Value = Any  # float or Measured, in SI
+Function = Any  # registry.Function, whose fields are made at run time
 
 
 # ---- functions

@@ -43,10 +43,10 @@ def show(number: str, data: str | None, as_json: bool) -> None:
 
     Example: fieldcheck job show 2026-0001
     """
-    from fieldcheck.desk import summaries
+    from fieldcheck.cli import showing
 
-    said = summaries.job(Journal.open(data_folder(data)), number)
-    click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else summaries.text(said))
+    said = showing.job(Journal.open(data_folder(data)), number)
+    click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else showing.text(said))
 
 
 @click.group()
