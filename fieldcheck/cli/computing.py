@@ -134,10 +134,10 @@ def line(result: Value, unit: str) -> str:
     """One line for a person: the value, or value ± U with k."""
     behind = " " + unit if unit else ""
     if not isinstance(result, Measured):
-        return figures.decimal_text(figures.round12(float(result))) + behind
+        return str(figures.decimal_text(figures.round12(float(result)))) + behind
     wide = budgets.expanded(result, "95 %")
     if wide.U == 0.0:
-        return figures.decimal_text(figures.round12(value_of(result))) + behind
+        return str(figures.decimal_text(figures.round12(value_of(result)))) + behind
     shown, spread = figures.value_with_uncertainty(result.value, wide.U)
     dof = "infinite" if wide.dof is None else str(int(wide.dof))
     k = figures.significant(wide.k, 3)

@@ -13,9 +13,9 @@ def serve(data: str | None, port: int) -> None:
 
     Example: fieldcheck serve --data ~/workshop
     """
-    from fieldcheck.desk import server
+    from fieldcheck.desk.server import serve as serve_desk
 
-    server.serve(data_folder(data), port)
+    serve_desk(data_folder(data), port)
 
 
 def register(main: click.Group) -> None:
