@@ -45,15 +45,15 @@ class Desk:
 
 
 @contextmanager
-def running(data: Path, phone: Path, rules: Rulebook | None = None) -> Iterator[Desk]:
-    """A desk with one person, customer, site, two meters and one open job with two items."""
+def running(data: Path, phone: Path, rules: Rulebook | None = None, procedure: str = "") -> Iterator[Desk]:
+    """A desk with one person, customer, site, two meters and one open job with two items of one procedure."""
     book: Rulebook = rules or rulebook()
     app = create_app(data, book, phone)
     server = make_server("127.0.0.1", 0, app, threaded=True)
     thread = threading.Thread(target=server.serve_forever, daemon=True)
     thread.start()
     desk = Desk(f"http://127.0.0.1:{server.server_port}/phone/", app.extensions[KEY], {})
-    furnish(desk, book)
+    furnish(desk, book, procedure)
     try:
         yield desk
     finally:
@@ -61,13 +61,14 @@ def running(data: Path, phone: Path, rules: Rulebook | None = None) -> Iterator[
         thread.join(10)
 
 
-def furnish(desk: Desk, book: Rulebook) -> None:
+def furnish(desk: Desk, book: Rulebook, name_of_procedure: str) -> None:
     """The invented workshop: one job with two items of one kind."""
     for name in ("person", "customer", "site", "m1", "m2", "first", "second", "job", "item1", "item2"):
         desk.ids[name] = new_id()
     ids = desk.ids
     index = texts.read(book.index, None)
-    procedure = index["procedures"][0]
+    wanted = [one for one in index["procedures"] if one["id"] == name_of_procedure]
+    procedure = (wanted or index["procedures"])[0]
     desk.write("workshop.named", {"name": "Bench One", "address": "1 Sample Lane"})
     desk.write("person.entered", {"person": ids["person"], "name": "R. Example", "competences": ["bench"],
                                   "active": True})

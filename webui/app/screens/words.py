@@ -10,7 +10,9 @@ SAID = {"confirm": "Done", "action": "Done", "photograph": "Photograph taken"}
 WORDS = {
     "four-wire": "The current probes, bars, lie outside; the potential probes, rings, touch finger and stud inside "
                  "them; the measuring path runs through the contact.",
-    "contact": "One probe on the finger, the other on its stud, as near the contact as they reach.",
+    "two-wire": "One probe on the finger, the other on its stud, as near the contact as they reach.",
+    "leads-shorted": "The meter with the tips of both probes pressed together.",
+    "contact-force": "The gauge pulls square to the finger, at its contact point, until the contact just opens.",
     "drum": "The drum seen from the pawl: fingers rest on the contact segments, the pawl turns it one tooth a pulse.",
     "bypass": "The breaker with a link across its terminals, and the dummy load in series.",
     "rectifier-cell": "One plate of the rectifier: the counter-electrode faces the spring washer; probes on its two "
