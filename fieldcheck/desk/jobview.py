@@ -223,7 +223,7 @@ def kit_of(shop: Workshop, state: Any, job: Any, today: date) -> Kit:
         for one in part["cautions"]:
             cautions[one["id"]] = (one["signal"].upper(), one["title"], one["text"])
         minutes = part["minutes"][item.depth]
-        at_work, waiting = at_work + minutes["work"], waiting + minutes["wait"]
+        at_work, waiting = at_work + int(minutes["work"]), waiting + int(minutes["wait"])
     have = [(name, _meters_for(state, name, today)) for name in dict.fromkeys(functions)]
     return Kit([(name, found) for name, found in have if found], [name for name, found in have if not found],
                list(cautions.values()), f"{at_work} min at work, {waiting} min waiting")

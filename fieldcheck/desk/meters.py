@@ -95,8 +95,11 @@ def _taken(shop: Workshop, state: Any, filled: forms.Filled, data: Data) -> tupl
 
 
 def state_on(data: Data, day: date) -> str:
-    """in calibration, overdue, not known or not checked, on a day."""
-    return IN_WORDS[meters.meter_state(meters.meter({"id": data["meter"], **data}), day.isoformat())]
+    """in calibration, overdue, not known or not checked, on a day; or that its specification is not understood."""
+    try:
+        return IN_WORDS[meters.meter_state(meters.meter({"id": data["meter"], **data}), day.isoformat())]
+    except (FieldcheckError, KeyError, TypeError, AttributeError):
+        return "specification not understood"
 
 
 def _cells(state: Any, data: Data) -> dict[str, str]:

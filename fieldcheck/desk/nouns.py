@@ -13,7 +13,7 @@ from fieldcheck.desk import entries, forms
 from fieldcheck.desk.lists import Column, Row, listing
 from fieldcheck.desk.shared import workshop
 from fieldcheck.desk.workshop import Workshop
-from fieldcheck.engine.errors import NotFound
+from fieldcheck.engine.errors import FieldcheckError, NotFound
 from fieldcheck.journal.forms import new_id
 
 Data = dict[str, Any]                       # an event's data: texts, numbers, lists, objects
@@ -80,10 +80,19 @@ def blueprint(noun: Noun) -> Blueprint:
 def _rows(noun: Noun, state: Any) -> list[Row]:
     fresh = request.args.get("fresh", "")
     return [
-        Row(url_for(f"{noun.plural}.one", id=data[noun.name]), noun.cells(state, data), noun.past(data),
+        Row(url_for(f"{noun.plural}.one", id=data[noun.name]), _cells(noun, state, data), noun.past(data),
             data[noun.name] == fresh)
         for data in state.workshop.all(noun.name) if not noun.hidden(state, data)
     ]
+
+
+def _cells(noun: Noun, state: Any, data: Data) -> Mapping[str, str]:
+    """The texts of a line.  An entry that another program wrote oddly stays for ever, and must not hide the rest."""
+    try:
+        return noun.cells(state, data)
+    except (FieldcheckError, KeyError, TypeError, AttributeError):
+        first = noun.columns[0].key
+        return {first: f"{data.get('name', '')} (cannot be read, enter it again)"}
 
 
 def _form(noun: Noun, shop: Workshop, state: Any, id: str, data: Data) -> ResponseReturnValue:

@@ -1,16 +1,22 @@
-"""Makes, finds and verifies records for the desk's pages."""
+"""Makes, finds and verifies records for the desk's pages.
+
+What sets and seals pages is imported when it is first needed: it takes longer to load than all the rest of the desk.
+"""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from fieldcheck.desk import joblist
 from fieldcheck.desk.workshop import Workshop
 from fieldcheck.engine.errors import FieldcheckError, NotFound
 from fieldcheck.keys.sealing import SealingKeys, create_sealing_keys, has_sealing_keys, load_sealing_keys
+
+if TYPE_CHECKING:
+    from fieldcheck.records.verify import Verification
 
 KEYS = "keys"
 
@@ -54,31 +60,24 @@ def sealing_keys(data: Path, state: Any) -> SealingKeys:
     return create_sealing_keys(data / KEYS, slot.event.data["name"])
 
 
-def make(shop: Workshop, state: Any, job: Any) -> str:
-    """Makes the record of a signed job; its number."""
-    from fieldcheck.records import make as making
-
+def may_make(job: Any) -> None:
+    """Refuses a job whose record is made and that nothing changed since; the rest the maker itself looks at."""
     if joblist.stage(job) == joblist.RECORDED:
         raise FieldcheckError("this job's record is made and nothing came since", job.opened.data["number"],
                               "download it from the list of records")
-    keys = sealing_keys(shop.journal.folder, state)
-    made = making.make(shop.journal, shop.rulebook, job.id, keys, datetime.now().astimezone())
-    return str(made.number)
 
 
-@dataclass(frozen=True)
-class Finding:
-    """What verifying said: the state (a word or two), one sentence, and what was looked at."""
+def make(shop: Workshop, job_id: str, keys: SealingKeys) -> str:
+    """Makes the record of a signed job; its number.  Takes seconds: call it while nobody waits for the state."""
+    from fieldcheck.records import make as making
 
-    state: str
-    sentence: str
-    details: list[str]
+    return making.make(shop.journal, job_id, keys, datetime.now().astimezone()).number
 
 
-def verify(data: Path, pdf: bytes) -> Finding:
-    """Verifies a record's file, against this workshop's own root when it has one."""
+def verify(shop: Workshop, pdf: bytes, later: bytes | None = None) -> Verification:
+    """Verifies a record's file, against this workshop's own root when it has one, and a later record of the job."""
     from fieldcheck.records import verify as verifying
 
+    data = shop.journal.folder
     root = load_sealing_keys(data / KEYS).root_pem if has_sealing_keys(data / KEYS) else None
-    found = verifying.verify(pdf, root)
-    return Finding(str(found.state), str(found.sentence), [str(one) for one in found.details])
+    return verifying.verify(pdf, root, later)

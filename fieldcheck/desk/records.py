@@ -37,8 +37,11 @@ def one(number: str) -> ResponseReturnValue:
     shop = workshop()
     with shop.reading() as state:
         record = recordkeeping.find(state, number)
-        found = recordkeeping.verify(shop.journal.folder, shop.journal.blob(record.sha256))
-        return render_template("records/record.html", record=record, found=found, data=record.job.opened.data)
+        job = {"id": record.job.id, "number": record.job.opened.data["number"]}
+        replaced = recordkeeping.find(state, record.superseded) if record.superseded else None
+    later = shop.journal.blob(replaced.sha256) if replaced else None
+    found = recordkeeping.verify(shop, shop.journal.blob(record.sha256), later)
+    return render_template("records/record.html", record=record, found=found, job=job)
 
 
 @bp.get("/<number>.pdf")
@@ -61,7 +64,9 @@ def make(job_id: str) -> ResponseReturnValue:
         job = state.jobs.get(job_id)
         if job is None or job.opened is None:
             raise NotFound("there is no such job", job_id)
-        number = recordkeeping.make(shop, state, job)
+        recordkeeping.may_make(job)
+        keys = recordkeeping.sealing_keys(shop.journal.folder, state)
+    number = recordkeeping.make(shop, job_id, keys)
     return redirect(url_for("records.one", number=number), 303)
 
 
@@ -74,5 +79,5 @@ def verify() -> ResponseReturnValue:
     data = sent.read() if sent is not None else b""
     if sent is None or not data:
         raise FieldcheckError("no file was chosen", "", "choose the record's PDF")
-    found = recordkeeping.verify(workshop().journal.folder, data)
+    found = recordkeeping.verify(workshop(), data)
     return render_template("records/verify.html", found=found, name=sent.filename or "")

@@ -18,11 +18,6 @@ from fieldcheck.keys.devices import DeviceKey, load_device_key, make_device_key
 
 DESK_KEY = Path("keys", "desk.pem")
 READ_AT_ONCE = 2000
-USUAL_FUNCTIONS = {
-    "DC voltage": "voltage", "AC voltage": "voltage", "DC current": "current", "AC current": "current",
-    "resistance": "resistance", "insulation resistance": "resistance", "temperature": "temperature",
-    "frequency": "frequency", "time": "time", "force": "force", "length": "length", "capacitance": "capacitance",
-}
 
 
 class Rulebook(Protocol):
@@ -110,24 +105,18 @@ class Workshop:
         raise NotFound(f'the rulebook has no procedure "{procedure}"', f"rulebook {rulebook or self.rulebook.digest}")
 
     def plates(self, kind: str) -> list[dict[str, Any]]:
-        """The nameplate questions of a kind: those of its procedures, each once."""
-        found: dict[str, dict[str, Any]] = {}
-        for one in self.index["procedures"]:
-            if one["kind"] == kind:
-                for plate in self.part(one["part"])["nameplate"]:
-                    found.setdefault(plate["id"], plate)
-        return list(found.values())
+        """The nameplate questions of a kind."""
+        return list(self.index["kinds"].get(kind, {}).get("nameplate", ()))
 
     @property
     def functions(self) -> dict[str, str]:
-        """Every function that a meter may be set to, with its quantity: the usual ones and those of the rulebook."""
-        found = dict(USUAL_FUNCTIONS)
-        for one in self.index["procedures"]:
-            for step in self.part(one["part"])["steps"]:
-                for asked in (step, *(step.get("columns") or ())):
-                    if asked.get("meter") and asked.get("quantity"):
-                        found[asked["meter"]] = asked["quantity"]
-        return found
+        """Every function that a meter may be set to, with its quantity."""
+        return dict(self.index["meter_functions"])
+
+    @property
+    def bases(self) -> list[tuple[str, str]]:
+        """(id, words) of every base oil that the compatibility tables know."""
+        return [(one["id"], one["label"]) for one in self.index["materials"]["bases"]]
 
     @property
     def cursor(self) -> int:

@@ -57,6 +57,7 @@ INDEX: dict[str, Any] = {
     "procedures": [{"id": "trial-contact", "title": "Trial contact", "kind": "contact-set", "part": "",
                     "minutes": PART["minutes"], "trade": ["finger"]}],
     "cautions": {"lift": {"signal": "CAUTION", "title": "Fingers", "text": "Keep fingers clear."}},
-    "sources": {}, "materials": {},
+    "sources": {}, "overlay": [], "meter_functions": {"resistance": "resistance", "DC voltage": "voltage"},
+    "materials": {"materials": [], "bases": [{"id": "mineral", "label": "Mineral oil", "note": ""}]},
     "kinds": {"contact-set": {"title": "Contact set", "trade": ["finger"], "nameplate": PLATE}},
 }
