@@ -220,7 +220,8 @@ def _hold(source: Source, path: Path, case: Case, result: Json, findings: Findin
                 findings.add(source, here, f'there is no verdict "{limit}"', did_you_mean(limit, verdicts))
             elif wanted != _plain(verdicts[limit][key]) and not (key == "reason" and wanted in verdicts[limit][key]):
                 got = verdicts[limit]
-                reason = f" ({got['value']}: {got['reason']})" if key != "reason" else ""
+                said = ": ".join(part for part in (got["value"], got["reason"]) if part)
+                reason = f" ({said})" if said and key != "reason" else ""
                 findings.add(source, here, f"no longer holds: {limit}, {key} is {_said(got[key])}{reason}, not "
                              f"{_said(wanted)}", "correct the rule, or the case if the rule is right")
 

@@ -25,10 +25,10 @@ def check_head(source: Source, procedure: Procedure, shelf: Shelf, findings: Fin
     if procedure.id != wanted:
         findings.add(source, ("id",), f'id "{procedure.id}" does not go with the file\'s name',
                      f'write id = "{wanted}", or rename the file')
-    if procedure.kind not in shelf.kinds:
+    if procedure.kind not in shelf.kinds and "kind" not in shelf.broken:
         findings.add(source, ("kind",), f'there is no kind "{procedure.kind}"',
                      did_you_mean(procedure.kind, shelf.kinds, "add it to rules/kinds"))
-    known_cautions(source, ("cautions",), procedure.cautions, shelf.cautions, findings)
+    known_cautions(source, ("cautions",), procedure.cautions, shelf, findings)
     for depth in ("routine", "full"):
         minutes = getattr(procedure.minutes, depth)
         if minutes.work < 1 or minutes.wait < 0:
@@ -39,8 +39,8 @@ def check_head(source: Source, procedure: Procedure, shelf: Shelf, findings: Fin
                      "full does all that routine does, and more", where="minutes, full")
     _supply(source, procedure, shelf, findings)
     if not any(step.phase == "as found" for step in procedure.step):
-        findings.add(source, ("step",), "there is no step as found", "the first readings are taken before any service",
-                     where="")
+        findings.add(source, ("step", 0), "there is no step as found",
+                     "the first readings are taken before any service", where="")
 
 
 def _supply(source: Source, procedure: Procedure, shelf: Shelf, findings: Findings) -> None:
@@ -64,12 +64,12 @@ def _supply(source: Source, procedure: Procedure, shelf: Shelf, findings: Findin
                          "name a caution of that supply state", where="")
 
 
-def known_cautions(source: Source, path: Path, given: list[str], known: Iterable[str], findings: Findings) -> None:
+def known_cautions(source: Source, path: Path, given: list[str], shelf: Shelf, findings: Findings) -> None:
     """Each named caution is there, and named once."""
     for place, one in enumerate(given):
-        if one not in known:
+        if one not in shelf.cautions and "caution" not in shelf.broken:
             findings.add(source, (*path, place), f'there is no caution "{one}"',
-                         did_you_mean(one, known, "add it to rules/cautions.toml"))
+                         did_you_mean(one, shelf.cautions, "add it to rules/cautions.toml"))
     for one in doubles(given):
         findings.add(source, path, f'caution "{one}" is named twice', "name it once")
 

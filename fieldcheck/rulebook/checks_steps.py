@@ -6,7 +6,6 @@ from fieldcheck.rulebook.checks_head import (
     NAME,
     check_choices,
     doubles,
-    known_cautions,
     quantity_and_unit,
 )
 from fieldcheck.rulebook.findings import Findings, Source, did_you_mean
@@ -34,7 +33,10 @@ def check_steps(source: Source, procedure: Procedure, shelf: Shelf, findings: Fi
             if getattr(step, key) and step.kind not in kinds:
                 findings.add(source, (*path, key), f'a step of kind {step.kind} has no "{key}"',
                              "that is for kind " + " or ".join(kinds))
-        known_cautions(source, (*path, "cautions"), step.cautions, procedure.cautions, findings)
+        for caution in step.cautions:
+            if caution not in procedure.cautions:
+                findings.add(source, (*path, "cautions"), f'caution "{caution}" is not among the procedure\'s',
+                             did_you_mean(caution, procedure.cautions, "name it in the cautions of the head too"))
         _repeats_form(source, path, step, findings)
         _aborts(source, path, step, findings)
         {"measure": _measure, "timing": _timing, "table": _table, "choice": _choice, "sequence": _sequence,
@@ -85,6 +87,8 @@ def _meter(source: Source, path: Path, what: Step | Column, shelf: Shelf, findin
         if what.quantity not in WITHOUT_METER:
             findings.add(source, path, f"a {what.quantity} without a meter", 'add meter = "...", a function of '
                          "rules/meters/functions.toml")
+        return
+    if "function" in shelf.broken:
         return
     if what.meter not in shelf.functions:
         findings.add(source, (*path, "meter"), f'there is no meter function "{what.meter}"',

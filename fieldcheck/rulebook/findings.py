@@ -61,14 +61,19 @@ class Source:
                 continue
             thing = lines.at(self.data, path[: place + 1])
             word = NAMED[str(path[place - 1])]
-            name = None
-            if isinstance(thing, dict):
-                name = thing.get("id", thing.get("name", thing.get("tag")))
-                if name is None and "since" in thing:
-                    names.append(f"{word} {thing['since']}")
-                    continue
-            names.append(f'{word} "{name}"' if name is not None else f"{word} number {int(path[place]) + 1}")
+            names.append(f"{word} {_name(thing, int(path[place]))}")
         return ", ".join(names)
+
+
+def _name(thing: Any, place: int) -> str:
+    """What a thing of a list is called: its id, name, day, or its number."""
+    if isinstance(thing, dict):
+        for key in ("id", "name"):
+            if key in thing:
+                return f'"{thing[key]}"'
+        if "since" in thing:
+            return str(thing["since"])
+    return f"number {place + 1}"
 
 
 class Findings:
@@ -100,7 +105,8 @@ def read(file: FilePath, findings: Findings) -> Source | None:
         data = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
         line, what = _toml_error(str(error), text)
-        findings.all.append(Finding(str(file), line, "", f"not TOML: {what}", "quote texts, close what is open"))
+        mend = "give each key once" if "overwrite" in what else "quote texts, close what is open"
+        findings.all.append(Finding(str(file), line, "", f"not TOML: {what}", mend))
         return None
     return Source(file, data, lines.index(text))
 

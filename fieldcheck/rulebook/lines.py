@@ -33,7 +33,8 @@ def index(text: str) -> dict[Path, int]:
         header = _HEADER.match(line)
         if header:
             table = _table(header.group(1) == "[[", _parts(header.group(2)), counts)
-            found.setdefault(table, number)
+            for length in range(1, len(table) + 1):
+                found.setdefault(table[:length], number)
             continue
         key = _KEY.match(line)
         if key:

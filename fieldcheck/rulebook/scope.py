@@ -91,7 +91,7 @@ def steps_behind(names: list[str], procedure: Procedure, trees: dict[str, Tree],
 
     certain: leave out what only one side of an if needs.
     """
-    steps = {one.id for one in procedure.step}
+    steps = {one.id for one in procedure.step if one.kind not in NO_VALUE}
     found: list[str] = []
     seen: set[str] = set()
     waiting = list(names)

@@ -14,7 +14,8 @@ from fieldcheck.rulebook.reading import shaped
 
 @dataclass
 class Shelf:
-    """Everything by its id; functions: meter function -> quantity; bench: meters of the cases as plain data."""
+    """Everything by its id; functions: meter function -> quantity; bench: meters of the cases as plain data;
+    broken: what could not be read whole, so that nothing is said to be missing from it."""
 
     cautions: dict[str, shapes.Caution] = field(default_factory=dict)
     sources: dict[str, shapes.PublicSource] = field(default_factory=dict)
@@ -23,6 +24,7 @@ class Shelf:
     bench: list[dict[str, Any]] = field(default_factory=list)
     materials: shapes.MaterialsFile | None = None
     read: list[Source] = field(default_factory=list)
+    broken: set[str] = field(default_factory=set)
 
 
 def load_shelf(folder: FilePath, findings: Findings) -> Shelf:
@@ -34,6 +36,7 @@ def load_shelf(folder: FilePath, findings: Findings) -> Shelf:
         source, kind = shaped(shapes.Kind, file, findings)
         _kept(shelf, source)
         if kind is None or source is None:
+            shelf.broken.add("kind")
             continue
         wanted = file.stem.replace("_", "-")
         if kind.id != wanted:
@@ -55,6 +58,7 @@ def _listed(file: FilePath, shape: Any, key: str, into: dict[str, Any], shelf: S
     source, found = shaped(shape, file, findings)
     _kept(shelf, source)
     if source is None or found is None:
+        shelf.broken.add(key)
         return
     for place, one in enumerate(getattr(found, key)):
         if one.id in into:
@@ -68,12 +72,14 @@ def _functions(file: FilePath, shelf: Shelf, findings: Findings) -> None:
     source, found = shaped(shapes.FunctionsFile, file, findings)
     _kept(shelf, source)
     if source is None or found is None:
+        shelf.broken.add("function")
         return
     for place, one in enumerate(found.function):
         try:
             check_quantity(one.quantity)
         except Wrong as wrong:
             findings.add(source, ("function", place, "quantity"), wrong.what, wrong.mend)
+            shelf.broken.add("function")
         shelf.functions[one.name] = one.quantity
 
 
@@ -97,7 +103,7 @@ def good_meters(source: Source, given: list[dict[str, Any]], functions: dict[str
             findings.add(source, ("meter", place), what, "see the form at the head of engine/meters.py")
             continue
         for function in made.functions:
-            if function.function not in functions:
+            if functions and function.function not in functions:
                 findings.add(source, ("meter", place), f'there is no meter function "{function.function}"',
                              did_you_mean(function.function, functions))
         good.append(data)
