@@ -39,10 +39,11 @@ window.fieldcheckRunCases = run
 
 
 def runner_chunk(runner: str, repo: Path, folder: Path = PARITY) -> str:
-    """JavaScript text of a chunk with the runner module `runner` from `folder`, its driver and the answers module."""
+    """JavaScript text of a chunk with the runner module `runner` from `folder`, its driver and what all share."""
     modules = [
         Module(runner, f"{runner}.py", (folder / f"{runner}.py").read_text(encoding="utf-8")),
-        Module("parity_answers", "parity_answers.py", (PARITY / "parity_answers.py").read_text(encoding="utf-8")),
+        *[Module(name, f"{name}.py", (PARITY / f"{name}.py").read_text(encoding="utf-8"))
+          for name in ("parity_answers", "float_bits")],
         Module("parity_driver", "parity_driver.py", DRIVER.format(runner=runner)),
     ]
     with Translator(repo / "webui" / ".cache") as translator:
