@@ -61,6 +61,13 @@ METERS = {
                 _range("5 kohm", "1 ohm", "1 %", "2"), _range("50 kohm", "10 ohm", "1 %", "2")]},
         ],
     },
+    "insulation": {
+        "tag": "N1", "name": "Insulation tester", "calibrated": "2026-02-12", "due": "2027-02-12", "checked": True,
+        "certificate": "QF-C-26-019",
+        "functions": [{"function": "insulation resistance", "quantity": "resistance",
+                       "ranges": [_range("20 Mohm", "0.01 Mohm", "3 %", "2"),
+                                  _range("200 Mohm", "0.1 Mohm", "3 %", "2")]}],
+    },
     "gauge": {
         "tag": "G1", "name": "Spring gauge", "calibrated": "2026-03-02", "due": "2027-03-02", "checked": True,
         "functions": [{"function": "force", "quantity": "force",

@@ -28,6 +28,7 @@ FINGERS = {
     ],
     "alignment": ["true"],
     "wear_track": ["even"],
+    "insulation": ["31.5"],
     "residue": ["clean"],
     "left": [{"1/v_plus": "10.8", "1/v_minus": "-10.5", "1/i": "0.500",
               "2/v_plus": "10.0", "2/v_minus": "-9.8", "2/i": "0.500"}],
