@@ -3,9 +3,10 @@
 Numbers are texts, formulas are trees.  The keys are those that the engine reads (work.py, procedures.py, judging.py).
 """
 
+import json
 from typing import Any
 
-from fieldcheck.engine import texts, units
+from fieldcheck.engine import units
 from fieldcheck.rulebook.amounts import number_and_unit
 from fieldcheck.rulebook.formula import Tree
 from fieldcheck.rulebook.shapes import Column, Limit, Plate, Procedure, Step, Unknown, Value, When
@@ -31,8 +32,11 @@ def part(procedure: Procedure, trees: dict[str, Tree], bounds: Bounds, shelf: Sh
 
 
 def text_of(compiled: Json) -> str:
-    """The exact text of a part or index; its SHA-256 is its name."""
-    return str(texts.write(compiled))
+    """The exact text of a part or index; its SHA-256 is its name.
+
+    In the form of event texts (engine/texts.py reads it), but longer than an event may be.
+    """
+    return json.dumps(compiled, ensure_ascii=False, separators=(",", ":"), allow_nan=False)
 
 
 def minutes(procedure: Procedure) -> Json:

@@ -20,7 +20,8 @@ ELECTRIC = Scope({"v": Type("value", units.unit("V").dimension), "i": Type("valu
                   "t": Type("value", POINT), "rows": Type("list", units.unit("V").dimension),
                   "kind": Type("text", choices=("bridge", "half-wave"))}, "", {})
 
-numbers = st.one_of(st.sampled_from(sorted(NAMES)), st.integers(1, 99).map(str), st.sampled_from(["0.5", "1.25", "3e-2"]))
+numbers = st.one_of(st.sampled_from(sorted(NAMES)), st.integers(1, 99).map(str),
+                    st.sampled_from(["0.5", "1.25", "3e-2"]))
 arithmetic = st.recursive(numbers, lambda inner: st.one_of(
     st.tuples(inner, st.sampled_from(["+", "-", "*", "/"]), inner).map(lambda p: f"({p[0]} {p[1]} {p[2]})"),
     inner.map(lambda one: f"(-{one})"),
@@ -70,6 +71,7 @@ def test_a_bound_may_be_a_bare_quantity():
         bound("50 mohn", ELECTRIC)
 
 
+REGISTRY = pint.UnitRegistry()
 IN_PINT = {"mohm": "milliohm", "ohm.mm2/m": "ohm*mm**2/m", "kgf": "kilogram_force", "ozf": "ounce_force",
            "psi": "psi", "rpm": "rpm", "h": "hour", "degF": "degF", "lb": "pound", "mm2/s": "mm**2/s", "bar": "bar",
            "N/cm2": "N/cm**2", "kA2s": "kiloampere*ampere*second", "in": "inch", "%": "percent", "uL": "microliter"}
@@ -79,8 +81,7 @@ SI = {"degF": "degC", "rpm": "1/s", "kA2s": "A**2*s", "%": "dimensionless"}
 @pytest.mark.parametrize("unit", sorted(IN_PINT))
 @pytest.mark.parametrize("number", ["1", "0.25", "37.5"])
 def test_quantities_convert_as_pint_converts_them(unit, number):
-    registry = pint.UnitRegistry()
-    quantity = registry.Quantity(float(number), IN_PINT[unit])
+    quantity = REGISTRY.Quantity(float(number), IN_PINT[unit])
     if unit == "rpm":
         expected = float(number) / 60
     else:
