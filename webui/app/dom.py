@@ -2,6 +2,7 @@
 
 from browser import document, window
 
+DIGITS = ("0", "1", "2", "3", "4", "5", "6", "7", "8", "9", "-", ".", ",")
 handlers = {}
 """kind -> function: "do" (name, arg), "typed" (name, text), "key" (key, repeated) -> True when used, "place" (),
 "file" (name, file), "pointer" (kind, x, y), "seen" ()."""
@@ -49,9 +50,11 @@ def _keydown(event):
     if event.ctrlKey or event.altKey or event.metaKey or event.isComposing:
         return
     key = event.key
-    if key not in ("Enter", " "):
-        return
     kind = event.target.tagName
+    if key not in ("Enter", " "):
+        if key in DIGITS and kind in ("BODY", "MAIN"):
+            handlers["key"](key, False)
+        return
     if kind in ("BUTTON", "A", "TEXTAREA", "SELECT", "SUMMARY"):
         return
     if kind == "INPUT" and (key == " " or event.target.type == "file"):

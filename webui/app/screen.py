@@ -37,7 +37,7 @@ class Screen:
 
     def on_key(self, key, repeated):
         """Space or Enter of a keyboard or foot switch does what the thumb does; True when it was used."""
-        if repeated or self.thumb is None:
+        if repeated or self.thumb is None or key not in ("Enter", " "):
             return False
         self.main.do(self.thumb[1], "")
         return True

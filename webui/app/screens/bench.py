@@ -24,6 +24,7 @@ class Bench:
         self._flow = None
         self.before = {}
         self.names = {}
+        self.read = []              # ids of the steps whose instruction was read in this sitting
 
     @property
     def flow(self):

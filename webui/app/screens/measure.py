@@ -174,8 +174,16 @@ class Measure(Step):
 
     def shown(self):
         Step.shown(self)
-        if self.mode in ("open", "correct"):
-            dom.focus("entry")
+        if self.mode == "correct" or (self.mode == "open" and self.known):
+            dom.focus("entry")      # else the keyboard would hide what is to be read first
+
+    def on_key(self, key_name, repeated):
+        """A digit typed before the field has the focus goes into it."""
+        if key_name not in ("Enter", " "):
+            if self.mode in ("open", "correct"):
+                dom.focus("entry")
+            return False
+        return Step.on_key(self, key_name, repeated)
 
     # ---- what happens
 

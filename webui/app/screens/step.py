@@ -45,6 +45,7 @@ class Step(Screen):
         self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
         self.name = self.step["title"]
+        self.known = self.step["kind"] == "table" and self.step["id"] in bench.read
         self.mode = self._mode(correcting)
         self._set_thumb()
 
@@ -73,19 +74,27 @@ class Step(Screen):
         when = "as found" if step["phase"] == "as found" and number == 0 else \
             "after service " + str(number) if number > 0 else step["phase"]
         return h("div.screen.step", h("p.path", link(self.bench.title(), self.bench.place(), "plain"), ", " + when),
-                 h("h1", {"id": "title"}, step["title"], self.title_end()),
+                 self.heading(),
                  h("p.hold", "Hold point: nothing after it before it is done") if self.instance.hold else NOTHING,
-                 h("p.do", step["text"]),
-                 self.drawing(), self.aborts(), self.entry_words(),
+                 self.instruction(),
                  h("div", {"id": "work"}, self.work()),
                  h("details.background", h("summary", "Why"), h("p", step["why"])) if step.get("why") else NOTHING,
                  h("div", {"id": "more"}, self.more()))
 
-    def title_end(self):
-        """What follows the title: row and column of a table."""
+    def heading(self):
+        """The title; in a table the row and column are what is read first."""
         if self.step["kind"] != "table" or not self.index:
-            return None
-        return h("span.cell", " " + bench_room.row_of(self.index) + ", " + self.column.get("title", ""))
+            return h("h1", self.step["title"])
+        return h("h1.in-table", h("span.of", self.step["title"]), " ",
+                 h("span.cell", bench_room.row_of(self.index) + ": " + self.column.get("title", "")))
+
+    def instruction(self):
+        """What to do, where to put the probes, when to stop; folded away once read in this sitting."""
+        rest = [h("p.do", self.step["text"]), self.drawing()]
+        if self.known:
+            return join([h("details.background.again", h("summary", "What to do"), rest), self.aborts(),
+                         self.entry_words()])
+        return join([rest, self.aborts(), self.entry_words()])
 
     def drawing(self):
         """The step's drawing, with its words."""
@@ -95,7 +104,7 @@ class Step(Screen):
 
     def aborts(self):
         """The limits at which the step is broken off."""
-        rows = [h("p.abort", "Stop: " + one["text"] + " " + value_words(one)) for one in self.step.get("abort") or []]
+        rows = [h("p.abort", one["text"] + " " + value_words(one)) for one in self.step.get("abort") or []]
         return join(rows)
 
     def entry_words(self):
@@ -262,6 +271,7 @@ class Step(Screen):
             words = dom.value("reason-words").strip()
             reason = (words if reason == "other" else reason + (": " + words if words else "")) or "no reason given"
         self.mode = "taken"
+        self.bench.read.append(self.step["id"])
         self.bench.answer(self.step["id"], self.instance.round, self.index, self.step["kind"], value, self.spoken,
                           corrects, reason, self.draft_name)
         self.after_taking()

@@ -98,7 +98,7 @@ class Timing(Measure):
 
     def on_key(self, key_name, repeated):
         """Space starts and splits; Enter stops and takes."""
-        if repeated or self.mode not in ("open", "correct"):
+        if repeated or self.mode not in ("open", "correct") or key_name not in ("Enter", " "):
             return Measure.on_key(self, key_name, repeated)
         if self.phase == "running":
             if key_name == " ":

@@ -25,7 +25,7 @@ def value_words(one):
     """The limit of an abort: "5 A"."""
     at_most = str(one.get("at_most") or "")
     unit = one.get("unit")
-    return "above " + at_most + ("\u202f" + units.symbol_text(units.unit(unit)) if unit else "") if at_most else ""
+    return at_most + ("\u202f" + units.symbol_text(units.unit(unit)) if unit else "") if at_most else ""
 
 
 def unit_text(name):
