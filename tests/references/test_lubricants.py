@@ -1,10 +1,12 @@
 """Oils and greases against checks section 11 (ISO 3448, ASTM D341, ASTM D2270, ASTM D217/NLGI) and `chemicals`."""
 
+import json
 import random
 
 import pytest
 from reference_values import check
 
+from fieldcheck import rulebook
 from fieldcheck.engine import measured
 from fieldcheck.engine.errors import OutOfRange
 from fieldcheck.engine.physics import lubricants as lub
@@ -202,3 +204,40 @@ def test_compatibility_is_the_worst_of_the_materials():
 def test_refusals(wrong):
     with pytest.raises(OutOfRange):
         wrong()
+
+
+# --- compatibility for formulas: checks 11.5 (READ-2) word for word, and the rulebook's own matrix ---
+
+def rank(base, *materials):
+    return [lub.compatibility_rank(base, material) for material in materials]
+
+
+def test_compatibility_of_checks_11_5():
+    esters_care = ("polycarbonate", "polyester", "ppo", "polystyrene", "polysulfone", "pvc", "buna-s", "butyl",
+                   "natural-rubber", "neoprene")
+    assert rank("ester", *esters_care) == [1.0] * len(esters_care)     # "extreme caution"
+    assert rank("ester", "abs") == [3.0]                               # ABS gears destroyed by an ester grease
+    plastics = ("nylon", "acetal", "abs", "polystyrene", "polycarbonate", "pvc", "polyester", "ppo", "polysulfone")
+    for base in ("synthetic-hydrocarbon", "silicone", "fluoroether"):
+        assert rank(base, *plastics) == [0.0] * len(plastics)
+    elastomers = ("natural-rubber", "neoprene", "butyl", "buna-s", "other-rubber")
+    assert rank("synthetic-hydrocarbon", *elastomers) == [3.0] * len(elastomers)   # "but NOT elastomers"
+    assert rank("mineral", "natural-rubber") == [3.0]                              # swelling
+    assert rank("mineral", "none") == [0.0]
+    assert rank("mineral", "celluloid") == rank("no such base", "brass") == rank("ester", "hasOwnProperty") == [2.0]
+
+
+def test_formulas_and_the_shelf_know_the_same_materials():
+    # rules/materials.toml is what the desk and `choose` go by; the formulas' table must say the same of every pair
+    index = json.loads(rulebook.load(rulebook.rules_folder()).index)["materials"]
+    materials = [one["id"] for one in index["materials"]]
+    bases = [one["id"] for one in index["bases"]]
+    assert len(materials) > 20 and len(bases) > 4
+    for base in bases:
+        for material in materials:
+            word = lub.goes_with(index["matrix"], base, [material])
+            assert lub.ORDER_OF_HARM[int(lub.compatibility_rank(base, material))] == word, (base, material)
+    for base, by_word in lub.COMPATIBILITY.items():
+        assert base in bases
+        for text in by_word.values():
+            assert set(text.split()) <= set(materials)
