@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Any
 
 from fieldcheck.engine import judging, meters, readings
@@ -208,6 +209,11 @@ def conditions(hand: Hand) -> list[tuple[str, str]]:
     return rows
 
 
+def _conditions_text(hand: Hand, event: Any) -> str:
+    return ", ".join([hand.amount(event.data[key]) for key in ("ambient", "humidity", "voltage", "frequency")
+                      if event.data.get(key)])
+
+
 # ---- cautions, photographs
 
 def cautions(hand: Hand) -> list[Caution]:
@@ -244,18 +250,36 @@ def changes(hand: Hand) -> list[Change]:
     """Every answer that took the place of another, and every decision between two; nothing was erased."""
     found = []
     for number, one in enumerate(hand.again.items, 1):
+        found += [(new.order, _other_outcome(hand, number, old, new)) for old, new in pairs(one.item.outcomes.history)]
         for key, slot in one.item.slots.items():
-            for old, new in zip(slot.history, slot.history[1:], strict=False):
+            for old, new in pairs(slot.history):
                 reason = new.data.get("reason") or "given anew, no reason asked"
                 what = f"Item {number}, {title_of(hand, one, slot_key(new))}"
                 found.append((new.order, Change(hand.when(new), hand.who(new), what, value_text(hand, one, old),
                                                 value_text(hand, one, new), reason)))
             if slot.rivals:
                 found.append((slot.rivals[-1].order, _undecided(hand, one, number, key, slot)))
+    for old, new in pairs(hand.again.job.conditions.history):
+        found.append((new.order, Change(hand.when(new), hand.who(new), "Conditions", _conditions_text(hand, old),
+                                        _conditions_text(hand, new), "taken again")))
     for event in hand.again.job.decisions:
         found.append((event.order, Change(hand.when(event), hand.who(event), "Decision between two answers", "",
                                           f"kept {event.data['keep'][:16]}…", event.data["reason"])))
     return [change for _, change in sorted(found, key=lambda pair: pair[0])]
+
+
+def _other_outcome(hand: Hand, number: int, old: Any, new: Any) -> Change:
+    return Change(hand.when(new), hand.who(new), f"Item {number}, outcome", _outcome_text(old), _outcome_text(new),
+                  "given anew")
+
+
+def _outcome_text(event: Any) -> str:
+    return ": ".join([text for text in (event.data["outcome"], event.data["reason"]) if text])
+
+
+def pairs(history: list[Any]) -> list[tuple[Any, Any]]:
+    """Each entry with the one that took its place."""
+    return list(pairwise(history))
 
 
 def _undecided(hand: Hand, one: ItemAgain, number: int, key: str, slot: Any) -> Change:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from contextlib import suppress
 from dataclasses import dataclass
 from typing import Any
 
@@ -65,10 +66,8 @@ def spaced(unit: str) -> str:
     """A unit behind its number, after a thin space, by its symbol where the engine knows it."""
     if not unit:
         return ""
-    try:
+    with suppress(FieldcheckError):  # one that a person made up is printed as it stands
         unit = units.symbol_text(units.unit(unit))
-    except FieldcheckError:
-        pass  # typed by a person: printed as it stands
     return "\u202f" + unit if unit else ""
 
 

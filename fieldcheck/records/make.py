@@ -130,7 +130,7 @@ def earlier_records(journal: Journal, customer: str, issued: list[Data]) -> list
         if row["job"] in theirs and row["data"].get("tree_size"):
             said = row["data"]
             event = next(one for one in _issuing(journal, row["job"]) if one["data"]["number"] == row["id"])
-            found.append({"number": row["id"], "sha256": said["sha256"], "size": said["tree_size"],
+            found.append({"number": row["id"], "job": row["job"], "sha256": said["sha256"], "size": said["tree_size"],
                           "root": said["tree_root"], "issued": event["at"], "offset": event["offset"]})
     return sorted(found, key=lambda one: one["size"])
 

@@ -31,7 +31,8 @@ SUPERSEDED: State = "superseded"
 class Verification:
     """state; sentence: one, plain, naming what is wrong where something is; details: what was checked and found.
 
-    intact: the file and its data are as they were sealed; a superseded record is intact too.
+    intact: the file and its data are as they were sealed; a superseded record is intact too. replaces: SHA-256 of the
+    files of the same job that this one replaces.
     """
 
     state: State
@@ -40,7 +41,7 @@ class Verification:
     number: str = ""
     sha256: str = ""
     signer_fingerprint: str = ""
-    supersedes: str = ""
+    replaces: tuple[str, ...] = ()
 
     @property
     def intact(self) -> bool:
@@ -51,7 +52,7 @@ class Verification:
         """For JSON."""
         return {"state": self.state, "intact": self.intact, "sentence": self.sentence, "details": self.details,
                 "number": self.number, "sha256": self.sha256, "signer_fingerprint": self.signer_fingerprint,
-                "supersedes": self.supersedes}
+                "replaces": list(self.replaces)}
 
 
 def verify(pdf: bytes, trust_root: bytes | None = None, against: bytes | None = None) -> Verification:
@@ -92,7 +93,7 @@ def _compared(said: Verification, later: Verification) -> Verification:
         return replace(said, details=[*said.details, f"The other file does not verify: {later.sentence}"])
     if later.signer_fingerprint != said.signer_fingerprint:
         return replace(said, details=[*said.details, "The other file was sealed by another signer."])
-    if later.supersedes != said.sha256:
+    if said.sha256 not in later.replaces:
         told = f"The other file, record {later.number}, does not replace this one."
         return replace(said, details=[*said.details, told])
     return _superseded(said, later.number)
@@ -112,25 +113,26 @@ def _alone(pdf: bytes, trust_root: bytes | None) -> Verification:
         return Verification(ALTERED, seal.sentence, [], sha256=sha256(pdf))
     signed_at = seal.signed_at.isoformat() if seal.signed_at else "no time"
     details = [f"Seal: {seal.signer}, {signed_at}; fingerprint of its certificate {seal.signer_fingerprint}."]
-    number = supersedes = ""
+    number, replaces = "", ()
     try:
         attached = _attachment(seal)
         data = _read(attached)
-        number, supersedes = data["number"], (data["supersedes"] or {}).get("sha256", "")
+        number = data["number"]
+        replaces = tuple(one["sha256"] for one in data["earlier"] if one["job"] == data["job"])
         for check in CHECKS:
             details.append(check(data))
         details.append(check_pages(pdf, data, sha256(attached)))
     except Wrong as wrong:
-        return Verification(ALTERED, str(wrong), details, number, sha256(pdf), seal.signer_fingerprint, supersedes)
+        return Verification(ALTERED, str(wrong), details, number, sha256(pdf), seal.signer_fingerprint, replaces)
     except FieldcheckError as error:
         sentence = f"The attached data do not fit together: {error.where + ': ' if error.where else ''}{error.what}."
-        return Verification(ALTERED, sentence, details, number, sha256(pdf), seal.signer_fingerprint, supersedes)
+        return Verification(ALTERED, sentence, details, number, sha256(pdf), seal.signer_fingerprint, replaces)
     except Exception:  # the data may have any shape; whatever cannot be followed is no record of ours
         sentence = "The attached data cannot be read as a record's."
-        return Verification(ALTERED, sentence, details, number, sha256(pdf), seal.signer_fingerprint, supersedes)
+        return Verification(ALTERED, sentence, details, number, sha256(pdf), seal.signer_fingerprint, replaces)
     state = TRUSTED if seal.state == "intact_trusted" else UNKNOWN
     sentence = f"Record {number}: {seal.sentence[0].lower()}{seal.sentence[1:]}"
-    return Verification(state, sentence, details, number, sha256(pdf), seal.signer_fingerprint, supersedes)
+    return Verification(state, sentence, details, number, sha256(pdf), seal.signer_fingerprint, replaces)
 
 
 def _attachment(seal: sealcheck.SealReport) -> bytes:
