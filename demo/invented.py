@@ -48,7 +48,8 @@ METERS = {
                 _range("50 mV", "0.001 mV", "0.05 %", "8"), _range("500 mV", "0.01 mV", "0.05 %", "5"),
                 _range("5 V", "0.1 mV", "0.05 %", "3"), _range("50 V", "1 mV", "0.05 %", "3")]},
             {"function": "AC voltage", "quantity": "voltage", "ranges": [
-                _range("5 V", "1 mV", "0.7 %", "5"), _range("50 V", "10 mV", "0.7 %", "2")]},
+                _range("500 mV", "0.1 mV", "0.7 %", "5"), _range("5 V", "1 mV", "0.7 %", "5"),
+                _range("50 V", "10 mV", "0.7 %", "2")]},
             {"function": "DC current", "quantity": "current", "ranges": [
                 _range("500 mA", "0.01 mA", "0.2 %", "2"), _range("5 A", "0.1 mA", "0.2 %", "2"),
                 _range("10 A", "1 mA", "0.5 %", "5")]},
@@ -67,6 +68,15 @@ METERS = {
         "functions": [{"function": "insulation resistance", "quantity": "resistance",
                        "ranges": [_range("20 Mohm", "0.01 Mohm", "3 %", "2"),
                                   _range("200 Mohm", "0.1 Mohm", "3 %", "2")]}],
+    },
+    "thermometer": {
+        "tag": "T1", "name": "Contact thermometer", "calibrated": "2026-01-20", "due": "2027-01-20", "checked": True,
+        "functions": [{"function": "temperature", "quantity": "temperature", "ranges": [
+            {"name": "200 degC", "upto": "200 degC", "resolution": "0.1 K", "counts": "5"}]}],
+    },
+    "feelers": {
+        "tag": "L1", "name": "Dial indicator", "calibrated": "2026-04-02", "due": "2027-04-02", "checked": True,
+        "functions": [{"function": "length", "quantity": "length", "ranges": [_range("10 mm", "0.01 mm", "0 %", "1")]}],
     },
     "gauge": {
         "tag": "G1", "name": "Spring gauge", "calibrated": "2026-03-02", "due": "2027-03-02", "checked": True,

@@ -1,6 +1,6 @@
 """What the invented technician reads and does, item by item: step -> answers, one for each time the step comes up."""
 
-ORDER = ("fingers",)
+ORDER = ("fingers", "gears", "breaker")
 
 FINGERS = {
     "nameplate.n_contacts": ["2"],
@@ -35,7 +35,84 @@ FINGERS = {
     "run": ["well"],
 }
 
-SCRIPTS = {"fingers": FINGERS}
+GEARS = {
+    "nameplate.gear_material": ["brass"],
+    "nameplate.second_material": ["steel"],
+    "nameplate.near_plastic": ["none"],
+    "nameplate.near_rubber": ["none"],
+    "nameplate.near_finish": ["decal"],
+    "nameplate.n_meshes": ["2"],
+    "nameplate.n_bearings": ["6"],
+    "nameplate.gear_module": ["0.5"],
+    "nameplate.t_cold": ["10"],
+    "nameplate.t_warm": ["40"],
+    "nameplate.u_run": ["12"],
+    "nameplate.i_known": ["0.300"],
+    "nameplate.interval": ["365"],
+    "lubricant_named": ["Shelf oil A and shelf grease B"],
+    "oil_data": ["two-points"],
+    "oil_base": ["synthetic-hydrocarbon"],
+    "oil_v40": ["22"],
+    "oil_v100": ["4.6"],
+    "grease": ["nlgi-1"],
+    "grease_base": ["synthetic-hydrocarbon"],
+    "spot_test": ["no-change"],
+    "agent": ["naphtha"],
+    "agent_test": ["no-change"],
+    "gears": ["sound"],
+    "old": ["hardened"],
+    "v_found": ["12.00"],
+    "i_found": [["0.362", "0.359", "0.361"]],
+    "coast_found": [["1.5", "1.4", "1.5"]],
+    "turn": ["stiff", "free"],
+    "backlash": [{"1/least": "0.07", "1/most": "0.11", "2/least": "0.06", "2/most": "0.10"}],
+    "soak": [{"consumables": [{"name": "naphtha", "amount": "5 mL"}]}],
+    "oil_on": [{"consumables": [{"name": "shelf oil A", "amount": "6 drops"}]}],
+    "grease_on": [{"consumables": [{"name": "shelf grease B", "amount": "thin film"}]}],
+    "drops": ["6"],
+    "v_left": ["12.01"],
+    "i_left": [["0.303", "0.301", "0.302"]],
+    "coast_left": [["2.6", "2.7", "2.6"]],
+    "creep": ["none"],
+    "electrical": ["dry"],
+    "run": ["well"],
+    "next_due": ["before the next winter display"],
+}
+
+BREAKER = {
+    "nameplate.rated": ["2.4"],
+    "nameplate.unattended": ["no"],
+    "nameplate.further_means": ["yes"],
+    "nameplate.area": ["0.5"],
+    "nameplate.insulation": ["pvc"],
+    "nameplate.i_fault": ["9"],
+    "nameplate.t_hot_last": ["12.2"],
+    "nameplate.t_cold_last": ["29.0"],
+    "nameplate.t_trip": ["95"],
+    "nameplate.t_site": ["30"],
+    "nameplate.adjustable": ["no"],
+    "look": ["sound"],
+    "t_start": ["19.7"],
+    "i_set": ["2.400"],
+    "i_hold_start": ["2.402"],
+    "drop": ["182.0"],
+    "hold_time": ["605.0"],
+    "i_hold_end": ["2.396"],
+    "i_hot_start": ["4.810"],
+    "t_hot": ["12.5"],
+    "i_hot_end": ["4.790"],
+    "recloses": ["self"],
+    "t_reclose": ["21.4"],
+    "waited": ["660"],
+    "t_cooled": ["20.2"],
+    "i_cold_start": ["4.806"],
+    "t_cold": ["29.7"],
+    "i_cold_end": ["4.794"],
+    "told": ["told"],
+    "run": ["well"],
+}
+
+SCRIPTS = {"fingers": FINGERS, "gears": GEARS, "breaker": BREAKER}
 
 CORRECTION = {"item": "fingers", "slot": "untouched|0|2/v_plus", "text": "11.8",
               "reason": "read 11.8, typed 11.9"}
