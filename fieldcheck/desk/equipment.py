@@ -5,14 +5,17 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
-from flask import url_for
+from flask import make_response, redirect, render_template, request, url_for
+from flask.typing import ResponseReturnValue
 
-from fieldcheck.desk import checks, forms
+from fieldcheck.desk import checks, entries, forms
 from fieldcheck.desk.forms import Field, Heading, Rows
-from fieldcheck.desk.joblist import name_of
+from fieldcheck.desk.joblist import jobs_of, name_of
 from fieldcheck.desk.lists import Column
 from fieldcheck.desk.nouns import Data, Links, Noun, Tables, blueprint
+from fieldcheck.desk.shared import workshop
 from fieldcheck.desk.workshop import Workshop
+from fieldcheck.engine.errors import NotFound
 
 TAG = "workshop tag"
 UNKNOWN = "unknown"
@@ -21,6 +24,11 @@ IDENTITIES = Rows("identities", "Identities", (
     Field("scheme", "Whose number", "select", choices=(("", "–"), *((one, one) for one in SCHEMES)), required=True),
     Field("value", "Number", required=True, longest=60),
 ), "identity", "The workshop's tag, the owner's object number, the serial number: as many as it has.")
+
+
+def gone(state: Any) -> set[str]:
+    """Entries that were joined into another."""
+    return {one.data["other"] for one in state.workshop.joined}
 
 
 def places(state: Any) -> tuple[forms.Choice, ...]:
@@ -125,6 +133,13 @@ def _cells(state: Any, data: Data) -> dict[str, str]:
             "others": ", ".join(one["value"] for one in data["identities"] if one["value"] != number_of(data))}
 
 
+def _links(state: Any, data: Data) -> Links:
+    """The jobs on this equipment, the last first, and what to do when it was entered twice."""
+    jobs = [job for job in jobs_of(state) if any(item.equipment == data["equipment"] for item in job.items.values())]
+    return [*((url_for("jobs.one", id=job.id), str(job.opened.data["number"])) for job in jobs),
+            (url_for("equipment.same", id=data["equipment"]), "Entered twice?")]
+
+
 NOUN = Noun(
     name="equipment", plural="equipment", title="Equipment", new="New equipment",
     about="Everything under care. One thing may bear several numbers.",
@@ -134,7 +149,33 @@ NOUN = Noun(
     sheet=_sheet,
     known=_known,
     taken=_taken,
-    hidden=lambda state, data: any(one.data["other"] == data["equipment"] for one in state.workshop.joined),
+    hidden=lambda state, data: data["equipment"] in gone(state),
+    links=_links,
     first=_first,
 )
 bp = blueprint(NOUN)
+
+
+@bp.route("/<id>/same", methods=("GET", "POST"))
+def same(id: str) -> ResponseReturnValue:
+    """Says that this and another entry are one thing."""
+    shop = workshop()
+    with shop.reading() as state:
+        data = state.workshop.get("equipment", id)
+        if data is None:
+            raise NotFound("there is no such equipment", id, "go back to the list")
+        others = tuple((one["equipment"], f"{number_of(one)} {one['name']}".strip())
+                       for one in state.workshop.all("equipment")
+                       if one["kind"] == data["kind"] and one["equipment"] not in {id, *gone(state)})
+        sheet = (Field("keep", "The entry to keep", "select", choices=(("", "choose"), *others), required=True),
+                 Field("reason", "How you know", required=True, longest=400), *entries.writer_field(state))
+        filled = forms.start(sheet, entries.known_writer(state), {}) if request.method == "GET" else \
+            forms.filled(sheet, request.form)
+        if request.method == "GET" or filled.errors:
+            page = render_template("nouns/same.html", id=id, name=data["name"], controls=forms.controls(sheet, filled),
+                                   errors=len(filled.errors))
+            return make_response(page, 422 if filled.errors else 200)
+        entries.write(shop, filled, "equipment.joined",
+                      {"keep": filled.text("keep"), "other": id, "reason": filled.text("reason")})
+        return entries.remember(make_response(redirect(url_for("equipment.every", fresh=filled.text("keep")), 303)),
+                                filled)

@@ -76,4 +76,5 @@ def dressed(answer: Response) -> Response:
     for name, value in HEADERS.items():
         answer.headers.setdefault(name, value)
     answer.headers.setdefault("Cache-Control", "no-store")
+    answer.headers.pop("Date", None)        # the server adds its own
     return answer

@@ -7,7 +7,7 @@ from datetime import date
 from typing import Any
 
 from fieldcheck.desk import forms
-from fieldcheck.desk.equipment import number_of
+from fieldcheck.desk.equipment import gone, number_of
 from fieldcheck.desk.forms import Field, Filled, Heading
 from fieldcheck.desk.workshop import Workshop
 from fieldcheck.journal.forms import new_id
@@ -28,7 +28,7 @@ def next_number(state: Any, year: int) -> str:
 
 def offered(shop: Workshop, state: Any, site: str) -> list[tuple[Data, Data]]:
     """(equipment, procedure of the index) that can be worked on at a site."""
-    joined = {one.data["other"] for one in state.workshop.joined}
+    joined = gone(state)
     found = []
     for equipment in state.workshop.all("equipment"):
         if equipment.get("site") == site and equipment["equipment"] not in joined:

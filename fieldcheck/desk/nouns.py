@@ -28,7 +28,8 @@ class Noun:
     name: as in events (person.entered {person}); plural: its path; cells(state, data): the list's texts;
     sheet(shop, state, data): its form, data being what was entered last or what the address says; known(data): the
     texts and tables that it starts with; taken(shop, state, filled, data): (new data without the identity,
-    errors by HTML name).  first(shop, state, args): links to choose from before the form of a new one, or [].
+    errors by HTML name).  links(state, data): where else to go from one.  first(shop, state, args): links to choose
+    from before the form of a new one, or [].
     """
 
     name: str
@@ -43,6 +44,7 @@ class Noun:
     taken: Callable[[Workshop, Any, forms.Filled, Data], tuple[Data, Mapping[str, str]]]
     past: Callable[[Data], bool] = field(default=lambda data: False)
     hidden: Callable[[Any, Data], bool] = field(default=lambda state, data: False)
+    links: Callable[[Any, Data], Links] = field(default=lambda state, data: [])
     first: Callable[[Workshop, Any, Mapping[str, str]], Links] = field(default=lambda shop, state, args: [])
 
 
@@ -98,24 +100,23 @@ def _cells(noun: Noun, state: Any, data: Data) -> Mapping[str, str]:
 def _form(noun: Noun, shop: Workshop, state: Any, id: str, data: Data) -> ResponseReturnValue:
     """Shows the form, or takes what was posted: keeps it, or shows it again as typed with what is wrong."""
     sheet = (*noun.sheet(shop, state, data), *entries.writer_field(state))
-    title = str(data["name"]) if id else noun.new
+
+    def page(shown: forms.Filled) -> str:
+        return render_template(
+            "nouns/form.html", noun=noun, title=str(data["name"]) if id else noun.new, errors=len(shown.errors),
+            links=noun.links(state, data) if id else [], controls=forms.controls(sheet, shown),
+        )
+
     if request.method == "GET":
         texts, tables = noun.known(data)
-        shown = forms.start(sheet, {**texts, **entries.known_writer(state)}, tables)
-        return render_template("nouns/form.html", noun=noun, title=title, controls=forms.controls(sheet, shown),
-                               errors=0)
+        return page(forms.start(sheet, {**texts, **entries.known_writer(state)}, tables))
     shown = forms.filled(sheet, request.form)
-    more = request.form.get("more", "")
-    if more:
-        shown = forms.with_one_more(sheet, shown, more)
-        return render_template("nouns/form.html", noun=noun, title=title, controls=forms.controls(sheet, shown),
-                               errors=0)
+    if request.form.get("more", ""):
+        return page(forms.with_one_more(sheet, shown, request.form["more"]))
     entered, wrong = noun.taken(shop, state, shown, data) if not shown.errors else ({}, {})
     shown.errors.update(wrong)
     if shown.errors:
-        page = render_template("nouns/form.html", noun=noun, title=title, controls=forms.controls(sheet, shown),
-                               errors=len(shown.errors))
-        return make_response(page, 422)
+        return make_response(page(shown), 422)
     key = id or new_id()
     entries.write(shop, shown, f"{noun.name}.entered", {noun.name: key, **entered})
     answer = make_response(redirect(url_for(f"{noun.plural}.every", fresh=key), 303))

@@ -56,6 +56,16 @@ def pdf(number: str) -> ResponseReturnValue:
     return answer
 
 
+@bp.get("/of/<job_id>.pdf")
+def newest(job_id: str) -> ResponseReturnValue:
+    """The last record of a job."""
+    with workshop().reading() as state:
+        job = state.jobs.get(job_id)
+        if job is None or not job.records:
+            raise NotFound("this job has no record yet", job_id, "sign it, then make its record")
+        return redirect(url_for("records.pdf", number=job.records[-1].data["number"]))
+
+
 @bp.post("/of/<job_id>")
 def make(job_id: str) -> ResponseReturnValue:
     """Make the record of a signed job."""

@@ -153,6 +153,23 @@ def test_new_equipment_first_asks_for_its_kind(desk):
     assert "/equipment/new?kind=contact-set" in page
 
 
+def test_equipment_entered_twice_is_joined_and_leaves_the_list(shop):
+    form = {"name": "Controller again", "site": shop.site, **shop.by}
+    other = entered(shop.desk, "equipment", "equipment", form, "?kind=contact-set")
+    refused = shop.desk.post(f"/equipment/{other}/same", data={"keep": other, "reason": "Kept reason", **shop.by})
+    assert refused.status_code == 422 and "Kept reason" in refused.text and 'id="keep-error"' in refused.text
+    answer = shop.desk.post(f"/equipment/{other}/same", data={"keep": shop.equipment, "reason": "one plate", **shop.by})
+    assert answer.status_code == 303
+    assert events(shop.desk, "equipment.joined") == [{"keep": shop.equipment, "other": other, "reason": "one plate"}]
+    assert names(shop.desk, "/equipment/") == ["W-10"]
+    assert "Controller again" not in shop.desk.get(f"/jobs/new?site={shop.site}").text
+
+
+def test_equipment_names_the_jobs_on_it(shop):
+    job = shop.job()
+    assert f'<a href="/jobs/{job}">J-1</a>' in shop.desk.get(f"/equipment/{shop.equipment}").text
+
+
 def test_a_lubricant_is_kept(shop):
     entered(shop.desk, "lubricants", "lubricant", {"name": "Clock oil", "type": "oil", "base": "mineral",
                                                    "v40": "46", **shop.by})

@@ -48,9 +48,10 @@ def test_the_list_and_the_job_name_it(made):
 
 
 def test_the_download_is_the_sealed_file(made):
-    desk, _, answer = made
+    desk, trial, answer = made
     file = desk.get(answer.headers["Location"] + ".pdf")
     assert file.mimetype == "application/pdf" and file.data.startswith(b"%PDF-1.7")
+    assert desk.get(f"/records/of/{trial.job}.pdf", follow_redirects=True).data == file.data
     assert "attachment" in file.headers["Content-Disposition"]
     sent = desk.post("/records/verify", data={"file": (io.BytesIO(file.data), "x.pdf")})
     assert "intact and trusted" in visible(sent)

@@ -11,6 +11,7 @@ import sqlite3
 import subprocess
 import sys
 from collections.abc import Iterator
+from concurrent.futures import ThreadPoolExecutor
 from contextlib import contextmanager
 from pathlib import Path
 
@@ -79,6 +80,27 @@ def test_the_real_server_refuses_another_host_and_another_page(tmp_path):
         assert ask(port, "GET", "/api/ping", Host=f"127.0.0.1:{port + 1}")[0] == 421
         assert ask(port, "POST", "/api/events", "{}", Origin="http://evil.example")[0] == 403
         assert ask(port, "POST", "/api/events", "{}", Origin=f"http://127.0.0.1:{port}")[0] == 422
+
+
+def test_phones_that_send_at_once_all_get_in(tmp_path):
+    def send(port: int, phone: Phone) -> None:
+        for last in range(1, 13):
+            phone.note(str(last))
+            head = phone.head()
+            body = {"device": phone.device, "events": phone.texts if last == 1 else phone.texts[-1:],
+                    "head": {"seq": head.seq, "hash": head.hash, "signature": head.signature}}
+            status, said = ask(port, "POST", "/api/events", json.dumps(body))
+            assert (status, json.loads(said)["ack"]) == (200, last + 1)
+            assert ask(port, "GET", "/jobs/")[0] == 200
+
+    phones = [Phone() for _ in range(6)]
+    with served(tmp_path / "w") as (_, port):
+        with ThreadPoolExecutor(6) as pool:
+            for done in [pool.submit(send, port, phone) for phone in phones]:
+                done.result()
+        held = [one["hash"] for one in json.loads(ask(port, "GET", "/api/events")[1])["events"]]
+    assert len(held) == len(set(held)) == 6 * 13 + 1
+    assert {digest for phone in phones for digest in phone.hashes} <= set(held)
 
 
 def test_an_answer_without_a_body_arrives(tmp_path):
