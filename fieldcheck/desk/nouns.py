@@ -21,6 +21,9 @@ Tables = Mapping[str, Sequence[Mapping[str, str]]]
 Links = list[tuple[str, str]]
 
 
+GIVEN = ("kind", "customer", "site")        # what the address of a new thing's form may say already
+
+
 @dataclass(frozen=True)
 class Noun:
     """One kind of thing that the workshop enters, and how it is shown and asked for.
@@ -65,7 +68,7 @@ def blueprint(noun: Noun) -> Blueprint:
             first = noun.first(shop, state, request.args)
             if first:
                 return render_template("nouns/first.html", noun=noun, links=first)
-            return _form(noun, shop, state, "", dict(request.args))
+            return _form(noun, shop, state, "", {key: request.args[key] for key in GIVEN if key in request.args})
 
     @bp.route("/<id>", methods=("GET", "POST"))
     def one(id: str) -> ResponseReturnValue:
