@@ -8,7 +8,7 @@ from typing import Any
 
 from markupsafe import Markup
 
-from fieldcheck.desk import joblist, meters
+from fieldcheck.desk import checks, joblist, meters
 from fieldcheck.desk.equipment import number_of
 from fieldcheck.desk.workshop import Workshop
 from fieldcheck.engine import judging, outcomes, readings, scale, verdicts, work
@@ -161,12 +161,20 @@ def said(event: Any) -> str:
     if value.get("unknown"):
         return "not marked"
     if "text" in value:
-        return f"{value['text']} {value.get('unit', '')}".strip()
+        return f"{value['text']} {_unit(value.get('unit', ''))}".strip()
     if "choice" in value:
         return str(value["choice"])
     if value.get("done"):
         return "done"
     return ", ".join(f"{key} {value[key]}" for key in value) or event.type
+
+
+def _unit(symbol: str) -> str:
+    """A unit as people write it; as it was sent when it is no key of ours."""
+    try:
+        return checks.unit_text(symbol)
+    except FieldcheckError:
+        return symbol
 
 
 def conflicts_of(shop: Workshop, state: Any, job: Any) -> list[Conflict]:
