@@ -1,6 +1,7 @@
 """What `functions` and `evaluate` do: read values with uncertainty, call the engine, put the answer into words."""
 
 import json
+import math
 from typing import Any
 
 from fieldcheck.engine import budgets, entry, explain, figures, formulas, units
@@ -59,6 +60,9 @@ def computed(function: Function, arguments: tuple[str, ...], as_json: bool) -> s
         if not equals or key not in known:
             raise FieldcheckError(f'"{text}" is not an argument of {function.name}', "",
                                   "write KEY=VALUE; " + signature(function))
+        if key in given:
+            raise FieldcheckError(f"{key} is given twice", "", "give each argument once; a list has commas: "
+                                  f"{key}=1,2,3")
         given[key] = argument(known[key], value)
     result = call(function.name, given)
     unit = units.unit(function.unit) if function.unit else None
@@ -92,7 +96,9 @@ def value(text: str, quantity: str, name: str) -> Value:
         spread = "temperature difference" if quantity == "temperature" else quantity
         written = width if _unit_in(width) else f"{width.strip()} {unit}"
         u = _one(written, spread, units.quantity(spread).base_unit, name)
-        return influence(centre, abs(u), name)
+        if not u >= 0.0:
+            raise FieldcheckError("a standard uncertainty is zero or more", name, "give it without sign")
+        return influence(centre, u, name)
     return _one(text, quantity, base, name)
 
 
@@ -169,8 +175,16 @@ def evaluated(model: Any) -> dict[str, Any]:
         return known[name]
 
     result = formulas.evaluate(tree, lookup)
+    if isinstance(result, bool):
+        raise FieldcheckError("the formula says yes or no, it gives no value", "formula", "leave the comparison out")
     given = correlations(model.get("correlations") or [], known)
-    return {"formula": formulas.text(tree), **numbers(result, given, model.get("coverage") or "95 %")}
+    coverage = model.get("coverage") or "95 %"
+    if not isinstance(coverage, str):
+        raise FieldcheckError(f"coverage {json.dumps(coverage)} is not understood", "coverage",
+                              'write "95 %" or "k = 2"')
+    if not (math.isfinite(value_of(result)) and math.isfinite(budgets.combined(result, given))):
+        raise FieldcheckError("the result is too large to be computed with", "", "use larger units")
+    return {"formula": formulas.text(tree), **numbers(result, given, coverage)}
 
 
 def _tree(text: str, known: dict[str, Value]) -> list[Any]:
@@ -231,8 +245,26 @@ def correlations(rows: Any, known: dict[str, Value]) -> dict[tuple[str, str], fl
         r = number(row[2], where)
         if not -1.0 <= r <= 1.0:
             raise FieldcheckError("a correlation lies between -1 and 1", where, "check its sign and point")
+        if row[0] == row[1]:
+            raise FieldcheckError(f'"{row[0]}" stands on both sides', where, "name two different quantities")
+        if (row[0], row[1]) in result or (row[1], row[0]) in result:
+            raise FieldcheckError(f'the correlation of "{row[0]}" and "{row[1]}" is given twice', where, "give it once")
         result[(row[0], row[1])] = r
+    _possible(result)
     return result
+
+
+def _possible(given: dict[tuple[str, str], float]) -> None:
+    """Refuses correlations that no quantities can have together: their matrix would have a negative eigenvalue."""
+    import numpy
+
+    names = sorted({name for pair in given for name in pair})
+    matrix = numpy.eye(len(names))
+    for (a, b), r in given.items():
+        matrix[names.index(a), names.index(b)] = matrix[names.index(b), names.index(a)] = r
+    if names and numpy.linalg.eigvalsh(matrix)[0] < -1e-6:
+        raise FieldcheckError("no quantities can be correlated so, all at once", "correlations",
+                              "check the signs: the matrix of correlations must not have a negative eigenvalue")
 
 
 def evaluation_text(result: dict[str, Any]) -> str:

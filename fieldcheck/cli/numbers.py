@@ -49,6 +49,8 @@ def assess(run: str | None, template: str | None, schema: bool, as_json: bool) -
         raise click.UsageError("name a run file, or ask for one with --template PROCEDURE")
     data = runs.checked_run(read_json(run))
     part = rulebook.part(data["procedure"])
+    runs.check_against(part, data)
+    data = runs.answered(data)
     said = engine_assess.assess(part, data)
     said["explanations"] = engine_assess.explanations(part, data)
     click.echo(json.dumps(said, indent=2, ensure_ascii=False) if as_json else runs.assessment_text(said))

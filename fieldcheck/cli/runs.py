@@ -3,10 +3,22 @@
 import json
 from typing import Any
 
-from fieldcheck.engine import units
+from fieldcheck.engine import entry, units
 from fieldcheck.engine.errors import FieldcheckError
 
 TEXT = {"type": "string"}
+RANGE = {"type": "object", "required": ["name", "upto"], "additionalProperties": TEXT}
+METER = {
+    "type": "object", "required": ["tag", "functions"],
+    "properties": {
+        "tag": TEXT, "id": TEXT, "name": TEXT, "calibrated": TEXT, "due": TEXT, "checked": {"type": "boolean"},
+        "rated": {"type": "object", "additionalProperties": TEXT},
+        "functions": {"type": "array", "items": {
+            "type": "object", "required": ["function", "quantity", "ranges"],
+            "properties": {"function": TEXT, "quantity": TEXT, "leads": TEXT,
+                           "ranges": {"type": "array", "items": RANGE}}}},
+    },
+}
 
 
 def run_schema() -> dict[str, Any]:
@@ -25,12 +37,14 @@ def run_schema() -> dict[str, Any]:
             "nameplate": {"type": "object", "additionalProperties": TEXT},
             "conditions": {"type": "object", "additionalProperties": False,
                            "properties": {k: TEXT for k in ("ambient", "humidity", "voltage", "frequency")}},
-            "meters": {"type": "array", "items": {"type": "object", "required": ["tag", "functions"]}},
+            "meters": {"type": "array", "items": METER},
             "answers": {"type": "array", "items": {"type": "object", "required": ["step"], "properties": answer,
                                                    "additionalProperties": False}},
             "left": {"type": "array", "items": {"type": "object", "required": ["step", "reason"], "properties": left,
                                                 "additionalProperties": False}},
-            "defects": {"type": "array", "items": {"type": "object", "required": ["what", "level"]}},
+            "defects": {"type": "array", "items": {
+                "type": "object", "required": ["what", "level"],
+                "properties": {"what": TEXT, "level": {"enum": ["stop use", "repair before next use", "watch"]}}}},
         },
     }
 
@@ -41,6 +55,45 @@ def checked_run(data: Any) -> dict[str, Any]:
     _check(data, schema, "run")
     result: dict[str, Any] = data
     return result
+
+
+def check_against(part: dict[str, Any], run: dict[str, Any]) -> None:
+    """FieldcheckError at the first name or condition of a run that its procedure does not know."""
+    steps = {step["id"]: step for step in part["steps"]}
+    fields = [field["id"] for field in part["nameplate"]]
+    for name in run.get("nameplate", {}):
+        _known(name, fields, "nameplate field", "run.nameplate")
+    for kind in ("answers", "left"):
+        for i, given in enumerate(run.get(kind, [])):
+            where = f"run.{kind}[{i}]"
+            _known(given["step"], [*steps, "supply", "nameplate"], "step", where)
+            choices = [one["id"] for one in (steps.get(given["step"]) or {}).get("choices") or []]
+            if choices and given.get("choice"):
+                _known(given["choice"], [*choices, "unknown"], f"choice of {given['step']}", where)
+    quantities = {"ambient": "temperature", "humidity": "humidity", "voltage": "voltage", "frequency": "frequency"}
+    for name, text in run.get("conditions", {}).items():
+        try:
+            entry.read(text, quantities[name])
+        except FieldcheckError as error:
+            raise FieldcheckError(error.what, f"run.conditions.{name}", error.mend) from error
+
+
+def answered(run: dict[str, Any]) -> dict[str, Any]:
+    """The run without the answers that are still empty as in a template."""
+    def filled(one: dict[str, Any]) -> bool:
+        if "done" in one:
+            return bool(one["done"])
+        given = [one[key] for key in ("text", "texts", "choice", "start", "seen", "pulses", "end") if key in one]
+        return not given or any(given)
+
+    return {**run, "answers": [one for one in run.get("answers", []) if filled(one)]}
+
+
+def _known(name: str, known: list[str], what: str, where: str) -> None:
+    if name not in known:
+        near = units.nearest(name, known)
+        raise FieldcheckError(f'there is no {what} "{name}"', where,
+                              f"did you mean {near}?" if near else "known: " + ", ".join(known))
 
 
 def _check(data: Any, schema: dict[str, Any], where: str) -> None:
@@ -80,7 +133,10 @@ def _check_object(data: dict[str, Any], schema: dict[str, Any], where: str) -> N
 
 
 def template(part: dict[str, Any]) -> dict[str, Any]:
-    """A run of a procedure to fill in: every question, with empty texts and the units that it is asked in."""
+    """A run of a procedure to fill in: every question, with empty texts and the units that it is asked in.
+
+    What stays empty counts as not answered, an action with "done": false as not done (`answered`).
+    """
     answers = []
     for step in part["steps"]:
         if step["phase"] == "service" and step["kind"] == "action":
@@ -120,9 +176,9 @@ def _questions(step: dict[str, Any]) -> list[dict[str, Any]]:
     if kind == "sequence":
         return [{"step": step["id"], "start": "", "seen": []}]
     if kind == "choice":
-        return [{"step": step["id"], "choice": "unknown"}]
+        return [{"step": step["id"], "choice": ""}]
     if kind == "action":
-        return [{"step": step["id"], "done": True}]
+        return [{"step": step["id"], "done": False}]
     return []
 
 
