@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import io
 import sys
+from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 from typing import Any
 
@@ -19,12 +20,33 @@ from small_rulebook import small_rulebook
 from trial_job import full_job
 
 
+class FromThread:
+    """A client that asks in a thread of its own, as the server does.
+
+    Sealing runs an event loop, and this thread has one already while a browser test's Chromium is open.
+    """
+
+    def __init__(self, desk: FlaskClient) -> None:
+        self.desk = desk
+
+    def get(self, *args: Any, **named: Any) -> Any:
+        return self._ask(self.desk.get, args, named)
+
+    def post(self, *args: Any, **named: Any) -> Any:
+        return self._ask(self.desk.post, args, named)
+
+    @staticmethod
+    def _ask(call: Any, args: Any, named: Any) -> Any:
+        with ThreadPoolExecutor(1) as pool:
+            return pool.submit(call, *args, **named).result()
+
+
 @pytest.fixture(scope="module")
-def made(tmp_path_factory: pytest.TempPathFactory) -> tuple[FlaskClient, Any, Any]:
+def made(tmp_path_factory: pytest.TempPathFactory) -> tuple[FromThread, Any, Any]:
     """(desk, trial, answer to "Make the record"): one record is made once, since making takes seconds."""
     folder = tmp_path_factory.mktemp("shop")
     trial = full_job(folder)
-    desk = create_app(folder, small_rulebook()).test_client()
+    desk = FromThread(create_app(folder, small_rulebook()).test_client())
     assert "signed" in visible(desk.get(f"/jobs/{trial.job}"))
     assert "2026-0002" in visible(desk.get("/"))
     return desk, trial, desk.post(f"/records/of/{trial.job}")
