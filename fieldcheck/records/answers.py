@@ -33,7 +33,7 @@ def answer_text(hand: Hand, step: Data, column: Data, value: Data) -> str:
     if kind == "choice":
         return choice_text(step, value["choice"])
     if kind == "note":
-        return str(value["text"])
+        return str(value.get("text") or "done")
     if kind == "sequence":
         shown = f"from {value['start']}: " + " ".join(value["seen"])
         pulses = f", {value['pulses']} pulses" if value.get("pulses") else ""
@@ -68,11 +68,11 @@ def value_text(hand: Hand, one: ItemAgain, event: Any) -> str:
     if event.type == "step.left":
         return "not done: " + (event.data["reason"] or "no reason given")
     kind, value = event.data["kind"], event.data["value"]
-    if kind == "photograph":
+    if kind == "photograph" and value.get("blob"):
         return "photograph " + str(value["blob"])[:16] + "…"
     if value.get("unknown"):
         return "not marked"
-    if kind in ("confirm", "action"):
+    if kind in ("confirm", "action", "photograph"):
         return "done"
     try:
         step = one.work.step(event.data["step"]) if event.data["step"] != "nameplate" else {"kind": "measure"}

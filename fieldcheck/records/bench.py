@@ -5,14 +5,17 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Any
 
-from fieldcheck.engine import judging, readings, scale, verdicts
+from fieldcheck.engine import judging, scale, verdicts
 from fieldcheck.engine.explain import GLOSSES
-from fieldcheck.records.answers import NOT_STEPS, answer_text, choice_text, left_out, untouched
+from fieldcheck.engine.work import limit_names
+from fieldcheck.records.answers import choice_text, left_out, untouched
 from fieldcheck.records.hand import Hand, identities_text, spaced
 from fieldcheck.records.replay import ItemAgain
+from fieldcheck.records.taken import Taken, taken_of, usual_day
 from fieldcheck.records.words import marked_figures
 
 Data = dict[str, Any]  # JSON of many kinds
+OWN_GLOSSES = {"WORKSHOP": "the workshop's own limit, in place of ours"}
 
 
 @dataclass(frozen=True)
@@ -28,7 +31,7 @@ class Cell:
 @dataclass(frozen=True)
 class Row:
     """One limit: as found over as left. scale: SVG; margin: lines beside it (citation, tag, gloss);
-    stands: nothing was serviced, so that as found stands as the final value."""
+    stands: it was not taken again after service, so that as found stands as the final value."""
 
     key: str
     label: str
@@ -42,19 +45,9 @@ class Row:
 
 
 @dataclass(frozen=True)
-class Taken:
-    """One step's readings of one round: a line, or a table when columns are given. by: who, when, with what."""
-
-    title: str
-    phase: str
-    columns: list[str]
-    lines: list[list[str]]
-    by: str
-
-
-@dataclass(frozen=True)
 class Section:
-    """One item. facts: [(label, text)]; service, left_out, defects, parts: lines; examined: something was answered."""
+    """One item. facts: [(label, text)]; day: of times that show none; service, left_out, defects, parts: lines;
+    examined: something was answered."""
 
     number: int
     examined: bool
@@ -70,6 +63,7 @@ class Section:
     bounds: list[str]
     rows: list[Row]
     taken: list[Taken]
+    day: str
     service: list[str]
     left_out: list[str]
     defects: list[str]
@@ -88,7 +82,7 @@ def section(hand: Hand, one: ItemAgain, number: int) -> Section:
         outcome_reason=outcome.get("reason") or "", restrictions=outcome.get("restrictions") or "",
         next_due=outcome.get("next_due") or "", best=one.best,
         bounds=[] if untouched(one) else [hand.number(text) for text in one.reasons], rows=_rows(hand, one),
-        taken=_taken(hand, one), service=_service(hand, one), left_out=left_out(hand, one),
+        taken=taken_of(hand, one), day=usual_day(hand), service=_service(hand, one), left_out=left_out(hand, one),
         defects=[_defect(hand, event) for event in one.item.defects],
         parts=[_part(hand, event) for event in one.item.parts],
     )
@@ -138,7 +132,8 @@ def _condition(hand: Hand, one: ItemAgain) -> str:
 def _choices(one: ItemAgain) -> list[tuple[Data, Any]]:
     found = []
     for step in one.part["steps"]:
-        answer = one.work.at(step["id"], 0, "") if step["kind"] == "choice" else None
+        looked = step["kind"] == "choice" and step["phase"] in ("prepare", "as found")
+        answer = one.work.at(step["id"], 0, "") if looked else None
         if answer is not None and not answer.left:
             found.append((step, answer))
     return found
@@ -157,21 +152,46 @@ def _row(hand: Hand, one: ItemAgain, key: str, found: Any, left: Any) -> Row:
     explained = judging.explained(one.work, last)
     label = last.limit["label"] + (f" {last.row}" if last.row not in ("", "?") else "")
     return Row(
-        key=key, label=label, accepted=hand.number(explained["limit"]) or "no limit: what it needs is missing",
+        key=key, label=label, accepted=_accepted(hand, one, last, explained),
         found=_cell(hand, one, found, as_found=True) if found is not None else None,
         left=_cell(hand, one, last, as_found=False), scale=_scale(hand, one, found, left),
-        margin=margin_of(hand, explained), safety=bool(last.limit.get("safety")), stands=left is None,
+        margin=margin_of(hand, explained), safety=bool(last.limit.get("safety")),
+        stands=left is None and one.flow.last_round > 0,
     )
+
+
+def _accepted(hand: Hand, one: ItemAgain, judged: Any, explained: Data) -> str:
+    if looked_at(one, judged):
+        return "by what was seen"
+    return hand.number(explained["limit"]) or "no limit: what it needs is missing"
 
 
 def _cell(hand: Hand, one: ItemAgain, judged: Any, as_found: bool) -> Cell:
     statement = judged.verdict.statement
     word = verdicts.as_found_word(statement) if as_found else statement
-    return Cell(statement, word, hand.number(judging.printed(one.work, judged)), hand.number(judged.verdict.reason))
+    value = looked_at(one, judged) or hand.number(judging.printed(one.work, judged))
+    return Cell(statement, word, value, hand.number(judged.verdict.reason))
+
+
+def looked_at(one: ItemAgain, judged: Any) -> str:
+    """What was seen, where a limit rests on choices alone and its value is only a number for them; else ""."""
+    labels = []
+    for name in limit_names(one.part, judged.limit):
+        step = one.work.steps.get(name)
+        if name in one.work.values:
+            continue
+        if step is None or step["kind"] != "choice":
+            return ""
+        found = one.work.newest(name, judged.round, "")
+        if found is not None:
+            labels.append(choice_text(step, found[1].value.get("choice") or ""))
+    return "; ".join(labels)
 
 
 def _scale(hand: Hand, one: ItemAgain, found: Any, left: Any) -> str:
     last = left or found
+    if looked_at(one, last):
+        return ""
     earlier = found if left is not None else None
     if last.verdict.value is None and (earlier is None or earlier.verdict.value is None):
         return ""
@@ -186,53 +206,8 @@ def margin_of(hand: Hand, explained: Data) -> list[str]:
     known = hand.again.index.get("sources", {}).get(source, {})
     lines = [] if source == "practice" else [", ".join([known.get("title") or source, *([rest] if rest else [])])]
     tag, gloss = explained["tag"], explained["gloss"]
-    lines.append(f"{tag}: {gloss or GLOSSES.get(tag, '')}".rstrip(": "))
-    return [line for line in [*lines, explained["note"]] if line]
-
-
-# ---- readings
-
-def _taken(hand: Hand, one: ItemAgain) -> list[Taken]:
-    found = []
-    for instance in one.flow.instances:
-        step = instance.step
-        if step["id"] in NOT_STEPS or step["kind"] in ("confirm", "action", "photograph"):
-            continue
-        answers = [(index, one.work.at(step["id"], instance.round, index)) for index in instance.indexes]
-        taken = {index: answer for index, answer in answers if answer is not None and not answer.left}
-        if taken:
-            found.append(_block(hand, one, instance, taken))
-    return found
-
-
-def _block(hand: Hand, one: ItemAgain, instance: Any, taken: dict[str, Any]) -> Taken:
-    step = instance.step
-    phase = step["phase"] if instance.round == 0 else f"after service {instance.round}"
-    by = _by(hand, taken)
-    if step["kind"] != "table":
-        lines = [[answer_text(hand, step, step, answer.value)] for answer in taken.values()]
-        return Taken(step["title"], phase, [], lines, by)
-    columns = step["columns"]
-    lines = []
-    for row in readings.rows_of(one.work, step):
-        cells = [taken.get(readings.index_of(row, column["id"])) for column in columns]
-        lines.append([row, *["—" if cell is None else answer_text(hand, step, column, cell.value)
-                             for column, cell in zip(columns, cells, strict=True)]])
-    return Taken(step["title"], phase, ["", *[column["title"] for column in columns]], lines, by)
-
-
-def _by(hand: Hand, taken: dict[str, Any]) -> str:
-    """Persons, first and last time, meters of a block of readings."""
-    given = sorted([answer.event for answer in taken.values()], key=lambda event: event.at)
-    people = list(dict.fromkeys(hand.who(event) for event in given))
-    spans = [hand.when(given[0])] + ([f"to {hand.when(given[-1])[11:19]}"] if given[-1] is not given[0] else [])
-    used = []
-    for answer in taken.values():
-        meter = hand.entry("meter", answer.value.get("meter") or "")
-        if meter:
-            used.append(" ".join([meter["tag"], answer.value.get("function") or "", answer.value.get("range") or ""]))
-    meters = ", ".join(dict.fromkeys(text.strip() for text in used))
-    return " · ".join([" ".join(spans), ", ".join(people), *([meters] if meters else [])])
+    meaning = gloss or GLOSSES.get(tag) or OWN_GLOSSES.get(tag, "")
+    return [*lines, f"{tag}: {meaning}".rstrip(": ")]
 
 
 # ---- what was done and left out

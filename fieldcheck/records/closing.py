@@ -8,7 +8,7 @@ from typing import Any
 
 from fieldcheck.engine import judging, meters, readings
 from fieldcheck.records.answers import slot_key, title_of, untouched, value_text
-from fieldcheck.records.bench import margin_of
+from fieldcheck.records.bench import looked_at, margin_of
 from fieldcheck.records.hand import NOT_NOTED, Hand
 from fieldcheck.records.letter import Signature, signature
 from fieldcheck.records.replay import ItemAgain
@@ -25,11 +25,8 @@ COURSE = {
 }
 OWN_RESULTS = ("All readings were taken by the persons named in this record; no result from others is included. "
                "No sampling: every item named was worked on, or is marked as not examined.")
-RULES = {
-    "simple": "simple acceptance: the value alone is compared with the limit",
-    "guarded": "guarded acceptance: the guard band w = r·U stands on both sides of the limit",
-    "probability": "acceptance by conformance probability",
-}
+RULES = {"simple": "simple acceptance", "guarded": "guarded acceptance",
+         "probability": "acceptance by conformance probability"}
 
 
 @dataclass(frozen=True)
@@ -97,25 +94,33 @@ def arguments(hand: Hand, one: ItemAgain, number: int) -> list[Argument]:
 def _argument(hand: Hand, one: ItemAgain, found: Any, left: Any, number: int) -> Argument:
     last = left or found
     said = judging.explained(one.work, last)
-    name = said["limit"] and f", {said['limit']}"
-    rule = RULES[last.verdict.rule].split(":")[0]
+    seen = looked_at(one, last)
+    name = "" if seen or not said["limit"] else f", {said['limit']}"
     lines = [
-        ("Verdict", f"{said['value'] or 'no value'}: {said['statement']}, {said['reason']}"),
+        ("Verdict", f"{seen}: {said['statement']}" if seen else
+         f"{said['value'] or 'no value'}: {said['statement']}, {said['reason']}"),
         ("As found", _as_found(one, found) if left is not None and found is not None else ""),
         ("Formula", f"{said['formula']} = {said['formula_with_numbers']}" if said["formula"] else ""),
         ("Corrections", "; ".join([*said["corrections"], *said["notes"]])),
-        ("Rule", f"{rule}; {said['guard']}" if said["guard"] else rule),
+        ("Rule", "" if seen else _rule(last.verdict.rule, said["guard"])),
         ("Uncertainty", said["coverage"]),
         ("Budget", _budget(said["budget"])),
-        ("Probability", _probability(said)),
+        ("Probability", _probability(said) if said["budget"] else ""),
         ("To settle it", (said["settle"] or {}).get("text", "")),
+        ("Note", said["note"]),
     ]
     label = last.limit["label"] + (f" {last.row}" if last.row not in ("", "?") else "")
     told = [(label_, hand.number(text)) for label_, text in lines if text]
     return Argument(f"{number} · {label}{hand.number(name)}", said["statement"], told, margin_of(hand, said))
 
 
+def _rule(rule: str, guard: str) -> str:
+    return guard if guard.startswith(RULES[rule]) else "; ".join([text for text in (RULES[rule], guard) if text])
+
+
 def _as_found(one: ItemAgain, found: Any) -> str:
+    if looked_at(one, found):
+        return f"{looked_at(one, found)}: {found.verdict.statement}"
     value = judging.printed(one.work, found) or "no value"
     return f"{value}: {judging.explained(one.work, found)['statement']}, {found.verdict.reason}"
 
@@ -236,7 +241,8 @@ def pictures(hand: Hand) -> list[Picture]:
     for number, one in enumerate(hand.again.items, 1):
         for key, slot in one.item.slots.items():
             event = slot.event
-            if event is not None and event.data.get("kind") == "photograph" and event.type != "step.left":
+            taken = event is not None and event.type != "step.left" and event.data["kind"] == "photograph"
+            if taken and event.data["value"].get("blob"):
                 text = event.data["value"].get("caption") or title_of(hand, one, key)
                 found.append(Picture(event.data["value"]["blob"], f"Item {number}: {text}. {hand.when(event)}"))
         found += [Picture(event.data["blob"], f"Item {number}: {event.data['what']}. {hand.when(event)}")

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping
 from contextlib import suppress
 from dataclasses import dataclass
@@ -14,6 +15,7 @@ from fieldcheck.records.words import COMMA, POINT, day_text, marked, time_text
 
 Data = dict[str, Any]  # JSON of many kinds
 NOT_NOTED = "not noted"
+_PLAIN_NUMBER = re.compile(r"[\s\d.,;+<>\u2212-]+(?:[eE][+-]?\d+)?")  # no unit was typed with it, nor 4R7, nor OL
 
 
 @dataclass(frozen=True)
@@ -42,7 +44,8 @@ class Hand:
         if not value:
             return ""
         typed = value.get("texts") or [value.get("text") or ""]
-        return self.number("; ".join(typed)) + spaced(value.get("unit") or "")
+        bare = all(_PLAIN_NUMBER.fullmatch(text) for text in typed)
+        return self.number("; ".join(typed)) + (spaced(value.get("unit") or "") if bare else "")
 
     def when(self, event: Any) -> str:
         """Local time of an event with its offset from UTC."""

@@ -104,7 +104,7 @@ def _aside(hand: Hand, opened: Data) -> list[tuple[str, str]]:
 def _sentence(sections: list[Section]) -> str:
     """Of 3 items examined ..., the outcome in one sentence."""
     if len(sections) == 1:
-        said = IN_WORDS.get(sections[0].outcome, sections[0].outcome)
+        said = IN_WORDS.get(sections[0].outcome, "without an outcome")
         return f"{sections[0].title} ({sections[0].identities}) is {said}."
     parts = []
     for outcome in (*outcomes.OUTCOMES, "no outcome given"):
