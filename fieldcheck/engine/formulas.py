@@ -22,13 +22,14 @@ class MissingInput(FieldcheckError):
     """A value that a formula needs is not there.  names: the labels of what is missing, in the order met."""
 
     def __init__(self, names):
-        FieldcheckError.__init__(self, "missing: " + ", ".join(names), "", "take the reading, or say why it is not done")
+        FieldcheckError.__init__(self, "missing: " + ", ".join(names), "",
+                                 "take the reading, or say why it is not done")
         self.names = names
 
 
 @frozen("side", "value")
 class Bound:
-    """A reading known only to lie beyond a value.  side: ">" or "<".  value: float or Measured in SI, None = unknown."""
+    """A reading known only to lie beyond a value.  side: ">" or "<".  value: float or Measured, SI, None = unknown."""
 
 
 def _each(function):
@@ -252,7 +253,8 @@ def _call(tree, lookup):
     for i in range(len(values)):
         named[function.parameters[i].name] = values[i]
     for key in named:
-        if isinstance(named[key], Bound):
+        given = named[key] if isinstance(named[key], list) else [named[key]]
+        if any([isinstance(one, Bound) for one in given]):
             raise OutOfRange("a reading out of the meter's range cannot enter " + name)
     return registry.call(name, named)
 
