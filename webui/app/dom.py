@@ -129,6 +129,9 @@ def focus(name):
     found = document.getElementById(name)
     if found:
         found.focus({"preventScroll": True})
+        if found.tagName == "INPUT" and found.type == "text":
+            end = len(str(found.value))
+            found.setSelectionRange(end, end)
 
 
 def mark(name, cls, on):

@@ -74,15 +74,15 @@ async def tell():
 
 
 async def round_trip():
-    """Enrol where needed, push, pull, fetch rulebooks, send photographs."""
+    """Enrol where needed, send photographs, then the events that name them; pull, fetch rulebooks."""
     if not store.own["device"]:
         if not await enrol():
             return
+    await send_blobs()
     if not await push():
         return
     fresh = await pull()
     await fetch_rulebooks()
-    await send_blobs()
     if fresh:
         for act in listeners:
             act()

@@ -2,7 +2,8 @@
 
 from browser import aio, window
 
-from fieldcheck.engine import events, judging, outcomes, procedures, readings, verdicts
+from fieldcheck.engine import events, judging, outcomes, procedures, readings
+from fieldcheck.engine.formulas import names_in
 from fieldcheck.engine.physics import registry
 from fieldcheck.engine.work import TAKEN, Answer, answer_of, limit_names, of_item
 
@@ -24,6 +25,8 @@ class Bench:
         self._flow = None
         self.before = {}
         self.names = {}
+        self.after_write = None     # called with the slot's key once an answer is on the disk
+        self.undoable = None        # (instance, index) of the answer just taken, while one tap may take it back
         self.read = []              # ids of the steps whose instruction was read in this sitting
 
     @property
@@ -90,6 +93,8 @@ class Bench:
             event = await pen.write(self.job.id, kind, data, draft)
             if self.work.answers.get(key) is answer:
                 self.work.answers[key] = answer_of(event)
+            if self.after_write is not None:
+                self.after_write(key)
         running = write()
         aio.run(running)
         return answer
@@ -106,9 +111,11 @@ class Bench:
 
     # ---- verdicts
 
-    def judged(self, step_id, number, row="", column=""):
-        """The verdicts that a step (or one column of a table) feeds, at a round: list of Judged, those that say
-        something first."""
+    def candidates(self, step_id, number, row="", column=""):
+        """What a step (or one cell of a table) lets the engine judge now: list of (limit, key, row).
+
+        A limit of which a reading is still to come is not asked for: it would cost time and say nothing.
+        """
         work = self.work
         found = []
         wanted = work.limits_on(step_id)
@@ -120,9 +127,49 @@ class Bench:
             for key, limit_row in judging.keys_of(work, limit):
                 if row and limit_row not in ("", "?", row):
                     continue
-                found.append(judging.judge(work, limit, key, limit_row, number))
-        said = [one for one in found if one.verdict.statement != verdicts.NOT_JUDGED]
-        return said + [one for one in found if one.verdict.statement == verdicts.NOT_JUDGED]
+                table = judging.table_of(work, limit) if limit.get("each") else ""
+                if self.all_there(limit["value"], number, limit_row, table):
+                    found.append((limit, key, limit_row))
+        return found
+
+    def judge(self, candidate, number):
+        """The Judged of a candidate."""
+        limit, key, row = candidate
+        return judging.judge(self.work, limit, key, row, number)
+
+    def all_there(self, name, number, row, table):
+        """True unless a reading that a name needs is still to be taken (left out counts as there)."""
+        work = self.work
+        value = work.values.get(name)
+        if value is not None:
+            inner = row if table and value.get("each") == table else ""
+            for one in names_in(value["formula"]):
+                if not self.all_there(one, number, inner, table):
+                    return False
+            return True
+        if name.startswith("each "):
+            name = name[5:]
+        step_id, _, column = name.partition(".")
+        step = work.steps.get(step_id)
+        if step is None or step.get("optional") or not procedures.included(work, step):
+            return True
+        cells = [""]
+        if step["kind"] == "table":
+            if step_id == table and row not in ("", "?"):
+                cells = [row + "/" + column]
+            else:
+                cells = [one for one in procedures.cells(work, step) if not column or one.endswith("/" + column)]
+        for cell in cells:
+            if not self.answered(step_id, number, cell):
+                return False
+        return True
+
+    def answered(self, step_id, number, index):
+        """True when a question was answered or left at a round or before."""
+        for n in range(number, -1, -1):
+            if self.work.at(step_id, n, index) is not None or self.work.at(step_id, n, "") is not None:
+                return True
+        return False
 
     def names_of(self, limit):
         """Every name that a limit depends on."""

@@ -13,6 +13,7 @@ from .step import Step, step_place
 from .words import answer_text, unit_text
 
 POINTER_AFTER = 150     # milliseconds from the last keystroke until the pointer moves
+SETS = (2, 3, 5, 10)
 STATE_WORDS = {"overdue": "calibration overdue", "unknown": "no calibration date", "unchecked": "not checked today"}
 
 
@@ -144,6 +145,25 @@ class Measure(Step):
         return join([key([h("span", words), h("span.note", self.function), h("span.flagged", state) if state else None],
                          "meters", "", "meter-now", aria_expanded="false")])
 
+    def more(self):
+        """Besides the usual keys: another number of repeats, before the first is typed."""
+        usual = Step.more(self)
+        if self.mode == "open" and self.repeats > 1:
+            return join([usual, h("div.more", {"id": "sets"}, key("Another number of readings", "sets", "",
+                                                                  "quiet-key"))])
+        return usual
+
+    def on_sets(self, arg):
+        """The choice of how many readings the set shall have."""
+        dom.fill("sets", join([key(str(n), "set", str(n), "unit") for n in SETS]))
+
+    async def on_set(self, n):
+        """Declares the number of repeats; it stands in the record and is fixed before the first reading."""
+        await self.bench.note("set.declared", {"step": self.step["id"], "round": self.instance.round, "n": int(n)})
+        self.repeats = int(n)
+        self.main.draw()
+        self.shown()
+
     def on_meters(self, arg):
         """Opens the choice of meter and range."""
         rows = [key("No meter named", "meter", "", "row")]
@@ -174,7 +194,8 @@ class Measure(Step):
 
     def shown(self):
         Step.shown(self)
-        if self.mode == "correct" or (self.mode == "open" and self.known):
+        begun = self.known or bool(self.draft.get("entry"))
+        if self.mode == "correct" or (self.mode == "open" and begun):
             dom.focus("entry")      # else the keyboard would hide what is to be read first
 
     def on_key(self, key_name, repeated):

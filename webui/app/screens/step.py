@@ -41,6 +41,7 @@ class Step(Screen):
         self.draft = draft
         self.timer = None
         self.judged = []
+        self.queue = []
         self.refused = None
         self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
@@ -146,21 +147,49 @@ class Step(Screen):
         answer = self.answer()
         shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value)),
                  self.meter_words(answer.value)]
-        self.judged = self.find_judged()
-        shown.append(self.statements())
-        slot = self.bench.slot(self.slot_key)
-        if slot is not None and len(slot.history) > 1:
-            shown.append(history(slot, self.step, self.column))
+        if not self.judged and not self.queue:
+            self.queue = self.candidates()
+            self.judge_next()
+        shown.append(h("div", {"id": "said-here"}, self.statements()))
+        shown.append(h("div", {"id": "entries"}, self.entries_so_far()))
         return join(shown)
 
-    def find_judged(self):
-        """The verdicts to show with this answer."""
+    def entries_so_far(self):
+        """All that was ever answered here, when there is more than one entry."""
+        slot = self.bench.slot(self.slot_key)
+        if slot is None or len(slot.history) < 2:
+            return NOTHING
+        return history(slot, self.step, self.column)
+
+    def written(self, key):
+        """The answer is on the disk: it joins the entries."""
+        if key == self.slot_key and self.main.screen is self and self.mode == "taken":
+            dom.fill("entries", self.entries_so_far())
+
+    def candidates(self):
+        """The limits that can be judged with this answer, as bench.candidates gives them."""
         if self.step["kind"] in ("nameplate", "photograph", "note") or self.step["id"] == procedures.SUPPLY:
             return []
         if self.step["kind"] == "table":
-            return self.bench.judged(self.step["id"], self.instance.round, bench_room.row_of(self.index),
-                                     self.column["id"])
-        return self.bench.judged(self.step["id"], self.instance.round)
+            return self.bench.candidates(self.step["id"], self.instance.round, bench_room.row_of(self.index),
+                                         self.column["id"])
+        return self.bench.candidates(self.step["id"], self.instance.round)
+
+    def judge_next(self):
+        """Judges the next limit in the queue; the statement is on the glass before the one after it is computed."""
+        if self.queue:
+            self.judged.append(self.bench.judge(self.queue.pop(0), self.instance.round))
+
+    def judge_rest(self, *_):
+        """One more verdict a turn, each shown as soon as it is there."""
+        if self.main.screen is not self or self.mode != "taken":
+            return
+        if not self.queue:
+            self.after_glass()
+            return
+        self.judge_next()
+        dom.fill("said-here", self.statements())
+        dom.after_paint(self.judge_rest)
 
     def statements(self):
         """Each verdict with its sign; the first with its scale."""
@@ -203,6 +232,8 @@ class Step(Screen):
             keys.append(("Correct", "correct", ""))
         if self.mode == "open" and self.step["kind"] != "nameplate":
             keys.append(("Not done", "left", ""))
+        if self.mode == "open" and self.bench.undoable is not None:
+            keys.append(("Undo: " + self.bench.undoable[0].step["title"], "undo_last", ""))
         keys += [("Defect", "defect", ""), ("Part used", "part", "")]
         return parts.more(*keys)
 
@@ -218,6 +249,8 @@ class Step(Screen):
 
     def shown(self):
         waiting.keep_counting()
+        if self.mode == "taken" and self.queue:
+            dom.after_paint(self.judge_rest)
 
     # ---- drafts
 
@@ -271,6 +304,8 @@ class Step(Screen):
             words = dom.value("reason-words").strip()
             reason = (words if reason == "other" else reason + (": " + words if words else "")) or "no reason given"
         self.mode = "taken"
+        self.bench.undoable = None
+        self.bench.after_write = self.written
         self.bench.read.append(self.step["id"])
         self.bench.answer(self.step["id"], self.instance.round, self.index, self.step["kind"], value, self.spoken,
                           corrects, reason, self.draft_name)
@@ -278,7 +313,9 @@ class Step(Screen):
 
     def spoken(self):
         """(statement, printed) that goes into the event: the first verdict that this step feeds."""
-        self.judged = self.find_judged()
+        self.judged = []
+        self.queue = self.candidates()
+        self.judge_next()
         if not self.judged or self.judged[0].verdict.value is None:
             return "", ""
         first = self.judged[0]
@@ -289,7 +326,8 @@ class Step(Screen):
         said = [one for one in self.judged if one.verdict.value is not None]
         bad = [one for one in said if one.verdict.statement in ("fail", "conditional fail")]
         buzz(2 if bad else 1)
-        if self.quick and not said:
+        if self.quick and not said and not self.queue:
+            self.bench.undoable = (self.instance, self.index)
             aio.run(self.on_next(""))
             return
         dom.fill("work", self.taken())
@@ -300,7 +338,7 @@ class Step(Screen):
         if said:
             dom.say(said[0].verdict.statement)
         window.performance.mark("fieldcheck taken")
-        dom.after_paint(self.after_glass)
+        dom.after_paint(self.judge_rest)
 
     def after_glass(self, *_):
         """What may wait until the statement is seen: the path, the ruler, the band."""
@@ -324,6 +362,17 @@ class Step(Screen):
 
     def on_left(self, arg):
         dom.go(address(step_place(self.bench, self.instance, self.index) + ["left"]))
+
+    def on_undo_last(self, arg):
+        """One tap takes back what was just taken: a confirmation is not done again, an answer is corrected."""
+        instance, index = self.bench.undoable
+        self.bench.undoable = None
+        place = step_place(self.bench, instance, index)
+        if instance.step["kind"] in ("confirm", "action"):
+            self.bench.leave(instance.step["id"], instance.round, index, "wrong tap, taken back")
+            dom.go(address(place))
+        else:
+            dom.go(address(place + ["correct"]))
 
     def on_defect(self, arg):
         dom.go(address(self.bench.place("defect")))
