@@ -57,7 +57,11 @@ def read_event(text):
 
     Raises EventError naming the field. What stands in `data` is judged by the fold, not here.
     """
-    event = read(text)
+    return checked(read(text))
+
+
+def checked(event):
+    """What was read from an event's text, once its fields are seen to be right; raises EventError as read_event."""
     if not isinstance(event, dict) or tuple(event.keys()) != FIELDS:
         raise EventError(
             "an event has the fields " + ", ".join(FIELDS) + ", in this order", "", "use the writer of the house"

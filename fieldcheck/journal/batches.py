@@ -7,8 +7,9 @@ import sqlite3
 from collections.abc import Callable, Mapping, Sequence
 from typing import NamedTuple
 
-from fieldcheck.engine.chain import EVENT_PREFIX, head_message, read_event, signing_message
+from fieldcheck.engine.chain import EVENT_PREFIX, checked, head_message, signing_message
 from fieldcheck.engine.errors import EventError
+from fieldcheck.journal import quick
 from fieldcheck.journal.forms import Event, Head, Refused
 
 Verifier = Callable[[str, bytes, str], bool]    # (public key, data, signature), all but the data in hexadecimal
@@ -29,7 +30,7 @@ def read_batch(device: str, texts: Sequence[str]) -> list[Link]:
     links: list[Link] = []
     for number, text in enumerate(texts):
         try:
-            event = read_event(text)
+            event = checked(quick.read(text))
         except EventError as error:
             where = f"event {number + 1} of the batch" + (f", {error.where}" if error.where else "")
             raise Refused("altered", 0, error.what, where, error.mend) from error
