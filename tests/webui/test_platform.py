@@ -118,7 +118,7 @@ def test_what_is_unsent_is_known_in_order_until_it_is_marked(page: Page) -> None
     page.evaluate(APPEND_MANY, ["dev", 12])
     unsent = json.loads(call(page, "unsent"))
     assert [row["seq"] for row in unsent] == list(range(1, 13))
-    assert set(unsent[0]) == {"device", "seq", "job", "hash", "text"}
+    assert set(unsent[0]) == {"device", "seq", "job", "hash", "text", "signature"}
     call(page, "markSent", json.dumps([row["hash"] for row in unsent[:10]] + ["unknown"]))
     assert [row["seq"] for row in json.loads(call(page, "unsent"))] == [11, 12]
     call(page, "addForeign", json.dumps([unsent[10]]))  # the server has it: that says so too
