@@ -35,7 +35,8 @@ def check(folder: Path | None) -> None:
 
 @rules.command()
 @click.argument("procedure")
-@click.option("--rules", "folder", type=click.Path(exists=True, file_okay=False, path_type=Path))
+@click.option("--rules", "folder", metavar="DIR", type=click.Path(exists=True, file_okay=False, path_type=Path),
+              help="Another folder of rules than the one that ships.")
 def show(procedure: str, folder: Path | None) -> None:
     """Print a procedure as a senior technician would read it.
 
