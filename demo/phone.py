@@ -209,7 +209,8 @@ class Hands:
             column = next(one for one in step["columns"] if one["id"] == name)
             text = given[index] if index in given else given[name]
         assert text is not None, f"the script has no reading for {step['id']}"
-        value: dict = {"texts": [str(one) for one in text]} if isinstance(text, list) else {"text": str(text)}
+        value: dict = dict(text) if isinstance(text, dict) else {"texts": text} if isinstance(text, list) else {
+            "text": str(text)}
         value["unit"] = column.get("unit") or ""
         function = column.get("meter")
         if function and function in self.meters:

@@ -1,6 +1,6 @@
 """What the invented technician reads and does, item by item: step -> answers, one for each time the step comes up."""
 
-ORDER = ("fingers", "gears", "breaker")
+ORDER = ("fingers", "gears", "breaker", "drum", "stack")
 
 FINGERS = {
     "nameplate.n_contacts": ["2"],
@@ -112,7 +112,56 @@ BREAKER = {
     "run": ["well"],
 }
 
-SCRIPTS = {"fingers": FINGERS, "gears": GEARS, "breaker": BREAKER}
+CLEAN_RUN = {"start": "F", "seen": ["N", "R", "N", "F"] * 5}
+MISSED_RUN = {"start": "F", "seen": ["N", "R", "N", "F", "N", "R", "R", *["N", "F", "N", "R"] * 3, "N"]}
+"""The seventh pulse moved nothing: what a gummed pivot does at the lowest voltage."""
+
+DRUM = {
+    "nameplate.drum": ["four"],
+    "nameplate.v_min": ["5"],
+    "nameplate.v_normal": ["12"],
+    "nameplate.v_max": ["16"],
+    "nameplate.coil_marked": ["12.0"],
+    "supply_match": ["agree"],
+    "insulation": ["52.0"],
+    "r_cold": ["12.1"],
+    "first_stroke": ["4.90", "4.10"],
+    "pull_in": [["4.61", "4.55", "4.63", "4.58", "4.60"],
+                {"texts": ["4.02", "4.11", "3.98", "4.07", "4.04"], "range": "50 V"}],
+    "drop_out": [["3.95", "3.92", "3.90", "3.97", "3.93"],
+                 {"texts": ["3.62", "3.58", "3.60", "3.65", "3.61"], "range": "50 V"}],
+    "run_low": [MISSED_RUN, CLEAN_RUN],
+    "run_normal": [CLEAN_RUN],
+    "run_high": [CLEAN_RUN],
+    "release": ["at-once"],
+    "hand_turn": ["stiff", "free"],
+    "finish": ["clean"],
+    "run": ["well"],
+}
+
+STACK = {
+    "nameplate.cell_kind": ["copper-oxide"],
+    "nameplate.circuit": ["bridge"],
+    "nameplate.n_cells": ["4"],
+    "nameplate.n_series": ["1"],
+    "nameplate.v_ac": ["10.0"],
+    "nameplate.r_load": ["500"],
+    "plates": ["clean"],
+    "may_reform": ["no"],
+    "plate_cold": ["19.9"],
+    "range_open": ["1.52"],
+    "range_short": ["1.05"],
+    "leads_shorted": ["0.2"],
+    "cells": [{f"{cell}/{way}": {"text": ohms, "range": "5 kohm"} for cell, way, ohms in (
+        ("1", "forward", "120"), ("1", "reverse", "2700"), ("2", "forward", "124"), ("2", "reverse", "2650"),
+        ("3", "forward", "118"), ("3", "reverse", "2740"), ("4", "forward", "121"), ("4", "reverse", "2690"))}],
+    "insulation": ["85.0"],
+    "plate_hot": ["30.5"],
+    "fitted": ["own"],
+    "run": ["well"],
+}
+
+SCRIPTS = {"fingers": FINGERS, "gears": GEARS, "breaker": BREAKER, "drum": DRUM, "stack": STACK}
 
 CORRECTION = {"item": "fingers", "slot": "untouched|0|2/v_plus", "text": "11.8",
               "reason": "read 11.8, typed 11.9"}

@@ -74,9 +74,11 @@ def _range(data, quantity, where):
         if not data.get(key):
             raise FieldcheckError("a range needs its " + key, where, "give the range's largest reading, as \"2 V\"")
     full_scale = _number(data, "full_scale", quantity, where) or _number(data, "upto", quantity, where)
-    return Range(data["name"], _number(data, "upto", quantity, where), _number(data, "resolution", quantity, where),
+    # The step of a thermometer is a difference: "0.1 K" read as a temperature would be near absolute zero.
+    step = "temperature difference" if quantity == "temperature" else quantity
+    return Range(data["name"], _number(data, "upto", quantity, where), _number(data, "resolution", step, where),
                  _number(data, "gain", "ratio", where), _number(data, "counts", "count", where),
-                 _number(data, "class", "ratio", where) * full_scale, _number(data, "division", quantity, where))
+                 _number(data, "class", "ratio", where) * full_scale, _number(data, "division", step, where))
 
 
 def _function(data, where):

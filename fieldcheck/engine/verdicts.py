@@ -231,7 +231,7 @@ def judge(value, limit, meters=(), bound="", correlations=None):
     statement = statement_of(y, at_least, at_most, guard)
     known = NO_METER not in meters      # the resolution alone is no uncertainty to claim anything from
     sure = conformance_probability(y, wide.u, at_least, at_most, wide.dof) if known else None
-    reason = _reason(statement, y, at_least, at_most)
+    reason = _reason(statement, y, at_least, at_most, guard)
     if limit.safety and statement in (CONDITIONAL_PASS, CONDITIONAL_FAIL):
         statement = CONDITIONAL_FAIL
         reason = reason + ": " + DO_NOT_ENERGISE
@@ -242,7 +242,9 @@ def judge(value, limit, meters=(), bound="", correlations=None):
                    None if at_most is None else at_most - guard, sure, risk, notes)
 
 
-def _reason(statement, y, at_least, at_most):
+def _reason(statement, y, at_least, at_most, guard):
+    if statement == PASS and guard == 0.0:
+        return "inside the limit" if at_least is None or at_most is None else "inside both limits"
     if statement == PASS:
         return "inside the limit by more than the guard band" if at_least is None or at_most is None else \
             "inside both limits by more than the guard band"

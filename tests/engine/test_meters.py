@@ -143,3 +143,12 @@ def test_a_specification_that_makes_no_sense_names_its_key_and_place(change, wor
     with pytest.raises(FieldcheckError, match=words) as caught:
         meters.meter(data)
     assert caught.value.where == "meter M9 DC voltage"
+
+
+@pytest.mark.parametrize("step", ["0.1 K", "0.1 degC", "0.1"])
+def test_the_resolution_of_a_thermometer_is_a_difference_however_its_unit_is_written(step):
+    span = {"name": "200 degC", "upto": "200 degC", "resolution": step, "counts": "5"}
+    thermometer = meters.meter({"tag": "T1", "functions": [
+        {"function": "temperature", "quantity": "temperature", "ranges": [span]}]})
+    read = meters.reading_value(entry.read("30.5", "temperature"), thermometer, "temperature")
+    assert m.combined(read) == pytest.approx(0.5 / 3 ** 0.5, rel=1e-12)  # 5 counts of 0.1 K, rectangular (GUM 4.3.7)
