@@ -163,6 +163,7 @@ def test_a_process_of_its_own_says_the_same(arguments, code, tmp_path):
 
 
 def test_a_reader_that_stops_reading_is_no_error():
+    environment = {"PATH": "/usr/bin:/bin", "PYTHONPATH": ":".join(sys.path)}
     done = subprocess.run(f"{sys.executable} -m fieldcheck functions --json | head -c 10", shell=True,
-                          capture_output=True, text=True, check=False, env={"PATH": "/usr/bin:/bin", "PYTHONPATH": ":".join(sys.path)})
-    assert "Traceback" not in done.stderr
+                          capture_output=True, text=True, check=False, env=environment)
+    assert len(done.stdout) == 10 and "Traceback" not in done.stderr
