@@ -22,6 +22,7 @@ from pyhanko_certvalidator.registry import SimpleCertificateStore
 
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.keys.sealing import SealingKeys
+from fieldcheck.records.apart import apart
 
 FIELD = "RecordSeal"
 
@@ -51,7 +52,7 @@ def seal(pdf: bytes, keys: SealingKeys, when: datetime) -> bytes:
     )
     signer = _DatedSigner(meta, _signer(keys), moment)
     output = io.BytesIO()
-    signer.sign_pdf(writer, output=output)
+    apart(signer.sign_pdf, writer, output=output)
     return output.getvalue()
 
 

@@ -31,6 +31,8 @@ from pyhanko.sign.validation.pdf_embedded import EmbeddedPdfSignature
 from pyhanko.sign.validation.status import PdfSignatureStatus, SignatureCoverageLevel
 from pyhanko_certvalidator import ValidationContext
 
+from fieldcheck.records.apart import apart
+
 State = Literal["intact_trusted", "intact_unknown_signer", "altered", "no_seal"]
 NO_ATTACHMENTS: Mapping[str, bytes] = MappingProxyType({})
 
@@ -85,7 +87,7 @@ def check(pdf: bytes, trust_root_pem: bytes | None) -> SealReport:
         return SealReport("altered", NOT_A_PDF)
     try:
         with _quiet():
-            return _judged(pdf, root)
+            return apart(_judged, pdf, root)
     except _Altered as altered:
         return SealReport("altered", str(altered))
     except Exception:  # readers raise dozens of kinds on damaged files, and every one means the same here
