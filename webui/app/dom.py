@@ -152,8 +152,8 @@ def attribute(name, which, words):
 
 
 def scroll_up():
-    """Shows the top of the page."""
-    window.scrollTo(0, 0)
+    """Shows the top of the screen."""
+    document.getElementById("main").scrollTop = 0
 
 
 def title(words):

@@ -346,7 +346,7 @@ def table_view(bench, instance, index):
     """The table as it stands; each cell leads to its screen."""
     step = instance.step
     columns = step["columns"]
-    head = h("tr", h("th", {"scope": "col"}, ""), [h("th", {"scope": "col"}, one["title"],
+    head = h("tr", h("td", ""), [h("th", {"scope": "col"}, one["title"],
              h("span.note", " " + unit_text(one.get("unit")))) for one in columns])
     rows = []
     seen = []
