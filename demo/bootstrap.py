@@ -97,20 +97,19 @@ def _run(command: list[str], doing: str, environment: dict[str, str] | None = No
             raise SystemExit(2)
 
 
-def install_program(extra: str = "") -> None:
-    """Makes the virtual environment and installs this clone in it, with its tests' libraries when `extra` says so."""
+def install_program(extra: str) -> None:
+    """Makes the virtual environment and installs this clone in it, with the libraries of an extra of pyproject.toml."""
     if sys.version_info < (3, 11):  # noqa: UP036  (an older Python reads this file before anything is installed)
         say("fieldcheck needs Python 3.11 or newer; this is " + sys.version.split()[0])
         raise SystemExit(2)
-    stamp = VENV / ("installed" + ("-" + extra if extra else ""))
+    stamp = VENV / f"installed-{extra}"
     wanted = hashlib.sha256((REPO / "pyproject.toml").read_bytes()).hexdigest()
     if stamp.exists() and stamp.read_text() == wanted and PYTHON.exists():
         return
     if not PYTHON.exists():
         _run([sys.executable, "-m", "venv", str(VENV)], "making the virtual environment .venv")
-    target = str(REPO) + (f"[{extra}]" if extra else "")
     _run(
-        [str(PYTHON), "-m", "pip", "install", "--quiet", "--disable-pip-version-check", "-e", target],
+        [str(PYTHON), "-m", "pip", "install", "--quiet", "--disable-pip-version-check", "-e", f"{REPO}[{extra}]"],
         "installing fieldcheck and its libraries",
     )
     stamp.write_text(wanted)

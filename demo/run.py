@@ -75,7 +75,7 @@ def main(given: list[str]) -> int:
     asked = arguments(given)
     if not bootstrap.is_inside():
         bootstrap.install_packages(bootstrap.RECORD_PACKAGES)
-        bootstrap.install_program()
+        bootstrap.install_program("phone")
         bootstrap.again_inside(str(Path(__file__).resolve()), given)
     import season
 
