@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from itertools import pairwise
 from typing import Any
 
-from fieldcheck.engine import judging, meters, readings
+from fieldcheck.engine import judging, meters, readings, verdicts
 from fieldcheck.records.answers import slot_key, title_of, untouched, value_text
 from fieldcheck.records.bench import looked_at, margin_of
 from fieldcheck.records.hand import NOT_NOTED, Hand
@@ -85,33 +85,55 @@ class Change:
 # ---- reasoning
 
 def arguments(hand: Hand, one: ItemAgain, number: int) -> list[Argument]:
-    """The reasoning of every verdict of an item that had something to judge."""
+    """The reasoning of every verdict of an item that had something to judge; those by what was seen in one."""
     if untouched(one):
         return []
-    return [_argument(hand, one, found, left, number) for _, found, left in one.rows]
+    computed: list[tuple[Any, Any]] = []
+    seen: list[tuple[Any, Any]] = []
+    for _, found, left in one.rows:
+        (seen if looked_at(one, left or found) else computed).append((found, left))
+    told = [_argument(hand, one, found, left, number) for found, left in computed]
+    return [*told, _seen(hand, one, seen, number)] if seen else told
+
+
+def _label(judged: Any) -> str:
+    return str(judged.limit["label"]) + (f" {judged.row}" if judged.row not in ("", "?") else "")
+
+
+def _seen(hand: Hand, one: ItemAgain, rows: list[tuple[Any, Any]], number: int) -> Argument:
+    """Limits that rest on what a person saw and chose: nothing to compute, a line each."""
+    lines, margin, worst = [], dict[str, None](), verdicts.PASS
+    for found, left in rows:
+        last = left or found
+        said = judging.explained(one.work, last)
+        before = f"; as found {_seen_text(one, found)}" if found is not None and left is not None else ""
+        note = f". {said['note']}" if said["note"] else ""
+        lines.append((_label(last), hand.number(_seen_text(one, last) + before + note)))
+        margin.update(dict.fromkeys(margin_of(hand, said)))
+        worst = verdicts.worse(worst, last.verdict.statement)
+    return Argument(f"{number} · Judged by what was seen", worst, lines, list(margin))
+
+
+def _seen_text(one: ItemAgain, judged: Any) -> str:
+    return f"{looked_at(one, judged)}: {judged.verdict.statement}"
 
 
 def _argument(hand: Hand, one: ItemAgain, found: Any, left: Any, number: int) -> Argument:
     last = left or found
     said = judging.explained(one.work, last)
-    seen = looked_at(one, last)
-    name = "" if seen or not said["limit"] else f", {said['limit']}"
+    accepted = f", {said['limit']}" if said["limit"] else ""
     lines = [
-        ("Verdict", f"{seen}: {said['statement']}" if seen else
-         f"{said['value'] or 'no value'}: {said['statement']}, {said['reason']}"),
+        ("Verdict", f"{said['value'] or 'no value'}: {said['statement']}, {said['reason']}"),
         ("As found", _as_found(one, found) if left is not None and found is not None else ""),
         ("Formula", f"{said['formula']} = {said['formula_with_numbers']}" if said["formula"] else ""),
         ("Corrections", "; ".join([*said["corrections"], *said["notes"]])),
-        ("Rule", "" if seen else _rule(last.verdict.rule, said["guard"])),
-        ("Uncertainty", said["coverage"]),
-        ("Budget", _budget(said["budget"])),
-        ("Probability", _probability(said) if said["budget"] else ""),
+        ("Rule", "; ".join([text for text in (_rule(last.verdict.rule, said["guard"]), _probability(said)) if text])),
+        ("Uncertainty", ". ".join([text for text in (said["coverage"], _budget(said["budget"])) if text])),
         ("To settle it", (said["settle"] or {}).get("text", "")),
         ("Note", said["note"]),
     ]
-    label = last.limit["label"] + (f" {last.row}" if last.row not in ("", "?") else "")
-    told = [(label_, hand.number(text)) for label_, text in lines if text]
-    return Argument(f"{number} · {label}{hand.number(name)}", said["statement"], told, margin_of(hand, said))
+    told = [(label, hand.number(text)) for label, text in lines if text]
+    return Argument(f"{number} · {_label(last)}{hand.number(accepted)}", said["statement"], told, margin_of(hand, said))
 
 
 def _rule(rule: str, guard: str) -> str:
@@ -119,8 +141,6 @@ def _rule(rule: str, guard: str) -> str:
 
 
 def _as_found(one: ItemAgain, found: Any) -> str:
-    if looked_at(one, found):
-        return f"{looked_at(one, found)}: {found.verdict.statement}"
     value = judging.printed(one.work, found) or "no value"
     return f"{value}: {judging.explained(one.work, found)['statement']}, {found.verdict.reason}"
 
@@ -132,10 +152,11 @@ def _budget(rows: list[Data]) -> str:
 
 
 def _probability(said: Data) -> str:
-    if not said["probability"]:
+    """Conformance probability and risk, where there was an uncertainty to compute them from."""
+    if not said["probability"] or not said["budget"]:
         return ""
-    risk = f"; risk of a wrong accept {said['wrong_accept']}" if said["wrong_accept"] else ""
-    return f"of conformance {said['probability']}{risk}"
+    risk = f", risk of a wrong accept {said['wrong_accept']}" if said["wrong_accept"] else ""
+    return f"conformance {said['probability']}{risk}"
 
 
 # ---- instruments and conditions

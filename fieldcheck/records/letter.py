@@ -125,20 +125,31 @@ def _line(hand: Hand, section: Section) -> Line:
 
 
 def _todo(sections: list[Section]) -> list[str]:
+    """One line an item with something to do; a next date that all share stands once."""
+    dates = {section.next_due for section in sections if section.next_due}
+    shared = len(dates) == 1 and len(sections) > 1 and all(section.next_due for section in sections)
     lines = []
     for section in sections:
-        who = f"Item {section.number}, {section.title}: "
-        if section.outcome == outcomes.UNSERVICEABLE:
-            why = f" ({section.outcome_reason})" if section.outcome_reason else ""
-            lines.append(who + "take it out of use" + why)
-        if section.restrictions:
-            lines.append(who + section.restrictions)
-        elif section.outcome == outcomes.RESTRICTED:
-            lines.append(who + (section.outcome_reason or "restrictions were not written down"))
-        lines += [who + _defect(text) for text in section.defects]
-        if section.next_due:
-            lines.append(who + f"next service due by {section.next_due}")
+        wanted = _wanted(section)
+        if section.next_due and not shared:
+            wanted.append(f"next service due by {section.next_due}")
+        if wanted:
+            lines.append(f"Item {section.number}, {section.title}: " + "; ".join(wanted))
+    if shared:
+        lines.append(f"All items: next service due by {dates.pop()}")
     return lines or ["Nothing is asked of you."]
+
+
+def _wanted(section: Section) -> list[str]:
+    wanted = []
+    if section.outcome == outcomes.UNSERVICEABLE:
+        why = section.outcome_reason or "; ".join(section.bounds)
+        wanted.append("take it out of use" + (f" ({why})" if why else ""))
+    if section.restrictions:
+        wanted.append(section.restrictions)
+    elif section.outcome == outcomes.RESTRICTED:
+        wanted.append(section.outcome_reason or "restricted because of " + "; ".join(section.bounds))
+    return wanted + [_defect(text) for text in section.defects]
 
 
 def _defect(text: str) -> str:

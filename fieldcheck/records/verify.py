@@ -17,7 +17,7 @@ from fieldcheck.journal.hashing import sha256
 from fieldcheck.journal.journal import Journal
 from fieldcheck.records import data as record_data
 from fieldcheck.records import sealcheck
-from fieldcheck.records.contents import CHECKS, Wrong, check_pages
+from fieldcheck.records.contents import CHECKS, OTHER_VERSION, Wrong, check_pages
 
 Data = dict[str, Any]  # JSON of many kinds
 State = Literal["intact and trusted", "intact but unknown signer", "altered", "superseded"]
@@ -132,6 +132,9 @@ def _alone(pdf: bytes, trust_root: bytes | None) -> Verification:
         return Verification(ALTERED, sentence, details, number, sha256(pdf), seal.signer_fingerprint, replaces)
     state = TRUSTED if seal.state == "intact_trusted" else UNKNOWN
     sentence = f"Record {number}: {seal.sentence[0].lower()}{seal.sentence[1:]}"
+    if any(line.startswith(OTHER_VERSION) for line in details):
+        sentence += " Its verdicts were computed by another version of the program, and this one words or finds some " \
+                    "otherwise."
     return Verification(state, sentence, details, number, sha256(pdf), seal.signer_fingerprint, replaces)
 
 

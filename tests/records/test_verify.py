@@ -27,7 +27,8 @@ from fieldcheck.journal.hashing import sha256
 from fieldcheck.journal.verify import verify as verify_journal
 from fieldcheck.keys.devices import make_device_key
 from fieldcheck.keys.sealing import create_sealing_keys
-from fieldcheck.records import make
+from fieldcheck.records import contents, make
+from fieldcheck.records import data as record_data
 from fieldcheck.records.pagetext import pages_text
 from fieldcheck.records.seal import seal
 from fieldcheck.records.verify import ALTERED, SUPERSEDED, TRUSTED, UNKNOWN, in_workshop, verify
@@ -300,6 +301,32 @@ def test_the_same_data_sealed_again_are_no_forgery(made: Made, unsealed: bytes) 
     """So that what the attacks are caught by is the attack, not the way in which these tests put files together."""
     again = reseal(unsealed, made, {"record.json": made.attached})
     assert verify(again, made.trial.keys.root_pem).state == TRUSTED
+
+
+def test_a_record_of_another_version_is_intact_and_says_where_the_verdicts_differ(
+    made: Made, unsealed: bytes
+) -> None:
+    """A later version may mend or word a verdict otherwise; the old record is not altered by that."""
+    data = json.loads(made.attached)
+    data["software"]["version"] = "0.0.1"
+    data["verdicts"][0]["verdicts"][0]["found"]["reason"] = "worded as it was then"
+    said = verify(reseal(unsealed, made, {"record.json": rfc8785.dumps(data)}), made.trial.keys.root_pem)
+    assert said.state == TRUSTED
+    assert said.sentence.endswith("this one words or finds some otherwise.")
+    assert any("the verdict on Contact resistance 1 of item 1 is not the same word for word" in line
+               for line in said.details)
+
+
+def test_an_outcome_better_than_the_readings_allow_is_named(tmp_path: Path) -> None:
+    """A maker that asks no questions: the signed outcome is recorded as it was given."""
+    trial = trial_job.full_job(tmp_path)
+    trial.write(trial.job, "outcome.given", {"item": trial.items[0], "outcome": "serviceable", "reason": "",
+                                             "restrictions": "", "next_due": ""})
+    trial.sign()
+    data = record_data.collect(trial.journal, trial.job, "R-2026-0001", trial.now, trial.journal.tree_head(), [], None)
+    with pytest.raises(contents.Wrong, match='The outcome does not follow from the readings: item 1 was called '
+                                             '"serviceable", its readings allow at best "serviceable with'):
+        contents.CHECKS[-1](data)
 
 
 def test_an_attachment_too_many_is_named(made: Made, unsealed: bytes) -> None:
