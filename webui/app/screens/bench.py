@@ -314,9 +314,13 @@ async def of(job_id, item_id):
     if part is None:
         return None
     await load_physics(part)
+    while store.own["waiting"]:
+        await aio.sleep(0.01)               # an answer on its way to the disk is not in the fold yet
+    if name in store.benches:
+        return store.benches[name]          # another arrival built it meanwhile; answers must go into one only
     bench = Bench(job, item, part)
-    await bench.look_back()
     store.benches[name] = bench
+    await bench.look_back()
     return bench
 
 
