@@ -7,6 +7,7 @@ An exception becomes "E:" + its class + ":" + its text, by `answers` below, whic
 
 from __future__ import annotations
 
+import ast
 from pathlib import Path
 
 import build
@@ -39,13 +40,28 @@ window.fieldcheckRunCases = run
 
 
 def runner_chunk(runner: str, repo: Path, folder: Path = PARITY) -> str:
-    """JavaScript text of a chunk with the runner module `runner` from `folder`, its driver and what all share."""
-    modules = [
-        Module(runner, f"{runner}.py", (folder / f"{runner}.py").read_text(encoding="utf-8")),
-        *[Module(name, f"{name}.py", (PARITY / f"{name}.py").read_text(encoding="utf-8"))
-          for name in ("parity_answers", "float_bits")],
-        Module("parity_driver", "parity_driver.py", DRIVER.format(runner=runner)),
-    ]
+    """JavaScript text of a chunk with the runner module `runner` from `folder`, what it imports from there, its
+    driver and the answers module."""
+    own = [Module(name, f"{name}.py", text) for name, text in needed(["parity_answers", runner], folder).items()]
+    modules = [*own, Module("parity_driver", "parity_driver.py", DRIVER.format(runner=runner))]
     with Translator(repo / "webui" / ".cache") as translator:
         lines = [build.entry(m.name, m.file, False, False, translator.function(m)) for m in modules]
     return build.register("parity", lines)
+
+
+def needed(names: list[str], folder: Path) -> dict[str, str]:
+    """Name -> source of these modules and of all that they import from `folder` or from here."""
+    found: dict[str, str] = {}
+    waiting = list(names)
+    while waiting:
+        name = waiting.pop()
+        paths = [place / f"{name}.py" for place in (folder, PARITY) if (place / f"{name}.py").is_file()]
+        if name in found or not paths:
+            continue
+        found[name] = paths[0].read_text(encoding="utf-8")
+        for node in ast.walk(ast.parse(found[name])):
+            if isinstance(node, ast.ImportFrom):
+                waiting.append(node.module or "")
+            elif isinstance(node, ast.Import):
+                waiting += [one.name for one in node.names]
+    return found
