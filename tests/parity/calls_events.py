@@ -229,6 +229,7 @@ EVENTS: Table = {
     "chain.is_id": lambda dice: [dice.choice((*DEVICES, DEVICES[0][:-1], DEVICES[0].upper(), "", "i" * 26, None))],
     "chain.is_digest": lambda dice: [dice.choice((digest(7), "f" * 64, "F" * 64, "0" * 63, "", None))],
     "chain.read_event": lambda dice: [event_text(dice)],
+    "chain.checked": lambda dice: [call("texts.read", dice.choice((dice.choice(HISTORY)[1], event_text(dice))))],
     "chain.check_device_chain": chain_of,
     "chain.leaf_digest": lambda dice: [event_text(dice)],
     "chain.node_digest": lambda dice: [digest(dice.randrange(99)), digest(dice.randrange(99))],

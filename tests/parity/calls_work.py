@@ -5,7 +5,7 @@ from __future__ import annotations
 import random
 from typing import Any
 
-from calls_data import Data, Table, as_data, call, kept, listed
+from calls_data import Data, Table, as_data, call, kept, listed, summed, value_or_measured, wide
 from calls_events import HISTORY, ITEM, JOB, METER
 from trial_part import PART
 
@@ -218,6 +218,12 @@ WORK: Table = {
     "judging.unit_of": lambda dice: [
         a_work(dice),
         dice.choice(("r", "rated", "drop", "cell.forward", "nothing", "ambient")),
+    ],
+    "calculated.free_values": lambda dice: [kept("part")],
+    "calculated.calculated": lambda dice: [a_work(dice), dice.randrange(0, 2)],
+    "calculated.value_text": lambda dice: [
+        dice.choice((value_or_measured(dice, wide(dice, -4, 4)), summed(dice, 3), "F", True)),
+        dice.choice(("mohm", "V", "1", "")),
     ],
     "procedures.supply_hold": lambda dice: [
         kept("part"),

@@ -136,6 +136,24 @@ PART: dict[str, Any] = {
             "unit": "1",
             "each": None,
         },
+        {
+            "id": "loss",
+            "label": "Loss at rated current, not judged",
+            "formula": ["*", ["name", "drop"], ["name", "rated"]],
+            "formula_text": "drop * rated",
+            "quantity": "power",
+            "unit": "mW",
+            "each": None,
+        },
+        {
+            "id": "gap",
+            "label": "Reverse less forward, not judged",
+            "formula": ["-", ["name", "cell.reverse"], ["name", "cell.forward"]],
+            "formula_text": "cell.reverse - cell.forward",
+            "quantity": "resistance",
+            "unit": "kohm",
+            "each": "cell",
+        },
     ],
     "limits": [
         limit(
