@@ -42,6 +42,8 @@ def test_a_correction_keeps_what_it_corrects(hand: Hand, desk: Desk) -> None:
     until(lambda: desk.events("answer.corrected"), "the correction at the desk")
     corrected = desk.events("answer.corrected")[0]["data"]
     assert corrected["reason"] == "typing slip" and corrected["value"]["text"] == "20.4"
+    hand.page.locator("button[data-do=correct]").tap()  # and once more: the address is the question's own again
+    until(lambda: hand.page.locator("#reason-typing_slip").count(), "the reasons")
     given = [one for one in desk.shop.journal.events(limit=1000) if one.hash == corrected["corrects"]]
     assert '"text":"80"' in given[0].text
 

@@ -90,6 +90,13 @@ def fill(name, html):
         found.innerHTML = html.text
 
 
+def append(name, html):
+    """Adds to what an element holds."""
+    found = document.getElementById(name)
+    if found:
+        found.insertAdjacentHTML("beforeend", html.text)
+
+
 def text(name, words):
     """Replaces the words of an element."""
     found = document.getElementById(name)
@@ -182,6 +189,11 @@ def go(hash_text, instead=False):
         window.location.replace(hash_text)
     else:
         window.location.hash = hash_text
+
+
+def rename(hash_text):
+    """The present screen has another address from now on; nothing is shown anew."""
+    window.history.replaceState("", "", hash_text)
 
 
 def back():

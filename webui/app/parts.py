@@ -15,10 +15,9 @@ def sign(statement):
     return Html(scale.sign(statement))
 
 
-def statement(work, judged, phase):
+def statement(judged, value, phase):
     """Sign, word and printed value of one verdict; the reason is one tap away."""
     word = judged.verdict.statement
-    value = judging.printed(work, judged)
     label = judged.limit["label"] + (" " + judged.row if judged.row not in ("", "?") else "")
     found = verdicts.as_found_word(word) if phase == "as found" else ""
     gloss = GLOSS.get(word) or (found if found and found != word else "")

@@ -35,7 +35,7 @@ class Outcome(Screen):
         for _, found, left in self.rows:
             judged = left or found
             before = found.verdict.value if left is not None and found is not None and not found.verdict.bound else None
-            rows.append(parts.statement(work, judged, ""))
+            rows.append(parts.statement(judged, judging.printed(work, judged), ""))
             if judged.verdict.value is not None:
                 rows.append(parts.verdict_scale(work, judged, before, self.bench.last_value(judged)))
         return h("div.screen", h("p.path", self.bench.title()), h("h1", "Outcome"),

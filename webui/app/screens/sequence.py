@@ -57,12 +57,18 @@ class Sequence(Step):
             return join([h("p.ask", "What does the drum show before the first pulse?"), self.pads("start-at")])
         if self.draft.get("mode") == "count":
             return self.counting()
-        count = len(self.seen)
-        words = "Pulse " + str(count + 1) + (" of " + str(self.wanted) if self.wanted else "")
-        return join([h("p.ask", {"id": "ask"}, words + ": what does the drum show?"), self.pads("tap"),
+        return join([h("p.ask", {"id": "ask"}, self.question()), self.pads("tap"),
                      h("p.tape", {"id": "tape", "aria-live": "polite"}, self.tape()),
                      h("div.helpers", [key("Undo last", "undo", "", "helper"),
                                        key("Count only", "count", "", "helper")])])
+
+    def question(self):
+        """What is asked next."""
+        count = len(self.seen)
+        if self.wanted and count >= self.wanted:
+            return str(count) + " pulses tapped; take them, or tap on"
+        return "Pulse " + str(count + 1) + (" of " + str(self.wanted) if self.wanted else "") + \
+            ": what does the drum show?"
 
     def pads(self, do):
         """One large key a function; the one expected next is named to the foot switch, not to the eye."""
@@ -91,11 +97,9 @@ class Sequence(Step):
 
     def on_tap(self, symbol):
         self.keep("seen", " ".join(self.seen + [symbol]))
-        count = len(self.seen)
-        dom.text("ask", "Pulse " + str(count + 1) + (" of " + str(self.wanted) if self.wanted else "")
-                 + ": what does the drum show?")
+        dom.text("ask", self.question())
         dom.text("tape", self.tape())
-        if self.wanted and count == self.wanted:
+        if self.wanted and len(self.seen) == self.wanted:
             dom.focus("thumb")
 
     def on_undo(self, arg):

@@ -2,7 +2,7 @@
 
 from browser import aio, window
 
-from fieldcheck.engine import events, judging, procedures, texts
+from fieldcheck.engine import events, procedures, texts
 from fieldcheck.engine.errors import FieldcheckError
 from fieldcheck.engine.work import LEFT
 
@@ -11,7 +11,8 @@ from ..markup import NOTHING, address, field, h, join, key, link, options
 from ..screen import Screen
 from . import bench as bench_room
 from . import waiting
-from .words import WORDS, answer_text, distance_words, history, value_words
+from .said import Said
+from .words import WORDS, answer_text, history, value_words
 
 platform = window.platform
 DRAFT_AFTER = 300       # milliseconds from the last keystroke until a draft is on its way to the disk
@@ -40,8 +41,7 @@ class Step(Screen):
         self.draft_name = bench.job.id + "/" + bench.item.id + "/" + self.slot_key
         self.draft = draft
         self.timer = None
-        self.judged = []
-        self.queue = []
+        self.said = Said(bench, instance.round, self.step["phase"])
         self.refused = None
         self.supply = bench.supply_now()
         self.entries = len(bench.flow.open_entries)
@@ -147,10 +147,9 @@ class Step(Screen):
         answer = self.answer()
         shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value)),
                  self.meter_words(answer.value)]
-        if not self.judged and not self.queue:
-            self.queue = self.candidates()
-            self.judge_next()
-        shown.append(h("div", {"id": "said-here"}, self.statements()))
+        if not self.said.judged:
+            self.said.begin(self.candidates())
+        shown.append(h("div", {"id": "said-here"}, self.said.html()))
         shown.append(h("div", {"id": "entries"}, self.entries_so_far()))
         return join(shown)
 
@@ -175,47 +174,14 @@ class Step(Screen):
                                          self.column["id"])
         return self.bench.candidates(self.step["id"], self.instance.round)
 
-    def judge_next(self):
-        """Judges the next limit in the queue; the statement is on the glass before the one after it is computed."""
-        if self.queue:
-            self.judged.append(self.bench.judge(self.queue.pop(0), self.instance.round))
-
     def judge_rest(self, *_):
-        """One more verdict a turn, each shown as soon as it is there."""
+        """One small piece a turn, each on the glass as soon as it is there."""
         if self.main.screen is not self or self.mode != "taken":
             return
-        if not self.queue:
+        if self.said.turn():
+            dom.after_paint(self.judge_rest)
+        else:
             self.after_glass()
-            return
-        self.judge_next()
-        dom.fill("said-here", self.statements())
-        dom.after_paint(self.judge_rest)
-
-    def statements(self):
-        """Each verdict with its sign; the first with its scale."""
-        work = self.bench.work
-        said = []
-        quiet = []
-        phase = "as found" if self.instance.round == 0 and self.step["phase"] == "as found" else ""
-        for one in self.judged:
-            if one.verdict.value is None:
-                quiet.append(one)
-                continue
-            last = self.bench.last_value(one)
-            said.append(parts.statement(work, one, phase))
-            said.append(parts.verdict_scale(work, one, self.found_value(one), last))
-            said.append(h("p.note", {"id": "distance-" + one.key}, distance_words(work, one, last)))
-        for one in quiet[:2]:
-            said.append(h("p.note", one.limit["label"] + (" " + one.row if one.row not in ("", "?") else "")
-                          + ": " + one.verdict.reason))
-        return join(said)
-
-    def found_value(self, judged):
-        """The as-found value of a limit (SI) to draw beside the one after service, or None."""
-        if judged.round == 0:
-            return None
-        found = judging.judge(self.bench.work, judged.limit, judged.key, judged.row, 0)
-        return found.verdict.value if not found.verdict.bound else None
 
     def meter_words(self, value):
         """With which meter it was read."""
@@ -249,7 +215,7 @@ class Step(Screen):
 
     def shown(self):
         waiting.keep_counting()
-        if self.mode == "taken" and self.queue:
+        if self.mode == "taken" and self.said.judged:
             dom.after_paint(self.judge_rest)
 
     # ---- drafts
@@ -280,6 +246,7 @@ class Step(Screen):
         return {"done": True}
 
     def on_take(self, arg):
+        window.performance.mark("fieldcheck take")
         try:
             value = self.value(arg)
         except FieldcheckError as error:
@@ -303,6 +270,7 @@ class Step(Screen):
             reason = dom.chosen("reason")
             words = dom.value("reason-words").strip()
             reason = (words if reason == "other" else reason + (": " + words if words else "")) or "no reason given"
+            dom.rename(address(step_place(self.bench, self.instance, self.index)))
         self.mode = "taken"
         self.bench.undoable = None
         self.bench.after_write = self.written
@@ -313,20 +281,15 @@ class Step(Screen):
 
     def spoken(self):
         """(statement, printed) that goes into the event: the first verdict that this step feeds."""
-        self.judged = []
-        self.queue = self.candidates()
-        self.judge_next()
-        if not self.judged or self.judged[0].verdict.value is None:
-            return "", ""
-        first = self.judged[0]
-        return first.verdict.statement, judging.printed(self.bench.work, first)
+        self.said.begin(self.candidates())
+        return self.said.first()
 
     def after_taking(self):
         """Shows what it means; where it means nothing yet, goes on."""
-        said = [one for one in self.judged if one.verdict.value is not None]
+        said = self.said.valued
         bad = [one for one in said if one.verdict.statement in ("fail", "conditional fail")]
         buzz(2 if bad else 1)
-        if self.quick and not said and not self.queue:
+        if self.quick and not said and not self.said.queue:
             self.bench.undoable = (self.instance, self.index)
             aio.run(self.on_next(""))
             return
@@ -384,15 +347,7 @@ class Step(Screen):
         dom.go(address(self.bench.place()))
 
     def on_why(self, limit_key):
-        """Opens the reason of a verdict, built when first opened."""
-        for one in self.judged:
-            if one.key == limit_key:
-                place = "why-" + limit_key
-                found = dom.find(place)
-                opening = bool(found.hidden)
-                if opening and not found.innerHTML:
-                    dom.fill(place, parts.explanation(judging.explained(self.bench.work, one)))
-                found.hidden = not opening
+        self.said.open_reason(limit_key)
 
 
 def buzz(times):

@@ -22,10 +22,16 @@ def seconds_text(milliseconds):
     return str(whole) + "." + waiting.two(hundredths - whole * 100)
 
 
+def times_text(times):
+    """Several times as they are taken: "1.52; 1.48"."""
+    return "; ".join([seconds_text(one) for one in times])
+
+
 class Timing(Measure):
     """A timing step, or a timing cell of a table.
 
-    draft: start (wall ms), page (monotonic ms, 0 after a reload), laps (list of ms), stopped (ms or absent).
+    draft: start (wall ms, while it runs), laps (list of ms), times (ms of each stop; where a step wants several, the
+    key says Start again until all are there), wall (some were timed by the wall clock), entry (what is taken).
     """
 
     label = "Start"
@@ -46,9 +52,9 @@ class Timing(Measure):
     @property
     def phase(self):
         """"ready", "running" or "stopped"."""
-        if self.draft.get("entry"):
-            return "stopped"
-        return "running" if self.draft.get("start") else "ready"
+        if self.draft.get("start"):
+            return "running"
+        return "stopped" if self.draft.get("entry") else "ready"
 
     def _set_phase(self):
         self.thumb = {"ready": ("Start", "start"), "running": ("Stop", "stop"), "stopped": ("Take", "take")}[self.phase]
@@ -64,11 +70,19 @@ class Timing(Measure):
         shown = self.elapsed() if phase == "running" else 0
         if phase == "stopped":
             return join([Measure.inputs(self), self.laps(), key("Time it again", "again", "", "quiet-key")])
-        keys = [key("Split", "split", "", "helper")] if phase == "running" else []
+        keys = [key("Split", "split", "", "helper")] if phase == "running" and self.repeats == 1 else []
         if phase == "ready":
             keys = [key("Type the time instead", "type", "", "quiet-key")]
-        return join([h("p.stopwatch", {"id": "watch", "role": "timer"}, clock_text(shown)), self.laps(),
+        return join([h("p.stopwatch", {"id": "watch", "role": "timer"}, clock_text(shown)), self.laps(), self.so_far(),
                      h("div.helpers", keys), self.table_so_far()])
+
+    def so_far(self):
+        """Where a step wants several times: which one comes, and those that are there."""
+        if self.repeats == 1:
+            return NOTHING
+        times = self.draft.get("times") or []
+        words = "Time " + str(len(times) + 1) + " of " + str(self.repeats)
+        return h("p.note", words + ("; so far " + times_text(times) + "\u202fs" if times else ""))
 
     def helper_keys(self):
         return NOTHING
@@ -132,10 +146,12 @@ class Timing(Measure):
         dom.fill("work", self.work())
 
     def on_stop(self, arg):
-        passed = self.elapsed()
-        self.draft["entry"] = seconds_text(passed)
-        self.draft["stopped"] = passed
-        self.draft["wall"] = self.page == 0
+        times = (self.draft.get("times") or []) + [self.elapsed()]
+        self.draft["times"] = times
+        self.draft["wall"] = self.page == 0 or bool(self.draft.get("wall"))
+        self.draft.pop("start")
+        if len(times) >= self.repeats:
+            self.draft["entry"] = times_text(times)
         waiting.end(self.draft_name)
         self.save_draft()
         platform.buzz(40)
@@ -143,7 +159,7 @@ class Timing(Measure):
         self.redraw()
 
     def on_again(self, arg):
-        for name in ("entry", "start", "stopped", "laps", "wall"):
+        for name in ("entry", "start", "times", "laps", "wall"):
             self.draft.pop(name, None)
         self.page = 0
         self.save_draft()
@@ -158,10 +174,12 @@ class Timing(Measure):
     def value(self, arg):
         text = dom.value("entry").strip()
         read = entry.read(text, "time", default_unit=self.unit)
-        if len(read.values) > 1:
-            raise EntryError("one time is wanted here", "", "type one")
+        count = max(1, len(read.values))
+        if count != self.repeats:
+            wanted = "one time is" if self.repeats == 1 else str(self.repeats) + " times are"
+            raise EntryError(wanted + " wanted here, " + str(count) + " typed", "", "type as many, a space between them")
         value = {"text": text, "unit": self.unit}
-        if self.draft.get("stopped") is not None and text == seconds_text(self.draft["stopped"]):
+        if self.draft.get("times") and text == times_text(self.draft["times"]):
             value["laps"] = [{"text": seconds_text(one)} for one in self.draft.get("laps") or []]
             value["wall"] = bool(self.draft.get("wall"))
         return value
