@@ -206,23 +206,34 @@ class Lookup:
         """A reading as Measured, Bound or (every) a list of Measured."""
         index = index_of(row, column["id"] if step["kind"] == "table" else "")
         answer = self._answer(step, index)
+        given = self.work.conditions.get("ambient")
+        name = ("each" if every else "mean") + (given["text"] + (given.get("unit") or "") if given else "")
+        if name not in answer.read:
+            answer.read[name] = self._read(step, column, index, answer, every)
+        state, value = answer.read[name]
+        if state:
+            self.states.append(state)
+        return value
+
+    def _read(self, step, column, index, answer, every):
+        """(state of the meter or "", value) of an answer, computed once an answer."""
         value = answer.value
         number = readings_of(value, column["quantity"], column.get("unit"))
         slot = step["title"] + (" " + index if index else "")
         if step["kind"] == "timing" or column.get("timing"):
             if value.get("function") is None and value.get("meter") is None:
-                return meters.stopwatch_value(number, slot)
+                return "", meters.stopwatch_value(number, slot)
         meter = self.work.meters.get(value.get("meter") or "")
         state = meters.meter_state(meter, answer.event.at if answer.event is not None else self.work.on)
-        if column["quantity"] not in UNMETERED:
-            self.states.append(state)
+        if column["quantity"] in UNMETERED:
+            state = ""
         function = value.get("function") or column.get("meter") or ""
         named = value.get("range") or None
         bound = meters.bound_of(number, meter, function, named)
         if bound is not None:
-            return Bound(bound[0], bound[1])
+            return state, Bound(bound[0], bound[1])
         read = meters.reading_list if every else meters.reading_value
-        return read(number, meter, function, named, self._ambient(), slot, bool(column.get("two_wire")))
+        return state, read(number, meter, function, named, self._ambient(), slot, bool(column.get("two_wire")))
 
     def _ambient(self):
         given = self.work.conditions.get("ambient")

@@ -26,8 +26,9 @@ def escaped(text):
 
 def _at(x):
     """A coordinate as text."""
-    text = figures.fixed(x, 1)
-    return "0.0" if text == "-0.0" else text
+    tenths = int(_floor(x * 10.0 + 0.5))
+    size = abs(tenths)
+    return ("-" if tenths < 0 else "") + str(size // 10) + "." + str(size % 10)
 
 
 def _line(kind, x1, y1, x2, y2, width="1"):
@@ -106,7 +107,7 @@ class Axis:
             self.ticks = _log_ticks(self.low, self.high)
         else:
             pad = (high - low) * 0.12 or abs(high) * 0.1 or 1.0
-            from_zero = 0.0 <= low < 0.4 * high
+            from_zero = 0.0 <= low < 0.5 * high
             self.low, self.high = (0.0 if from_zero else low - pad), high + pad
             self.start, self.length = self.low, self.high - self.low
             self.ticks = _linear_ticks(self.low, self.high)

@@ -15,7 +15,8 @@ LEFT = "left"
 
 class Answer:
     """What was answered to one question.  kind, value: as in the event; order: place in causal order;
-    event: the Event or None; left: the reason when the step was left, else "". """
+    event: the Event or None; left: the reason when the step was left, else ""; read: what readings.Lookup made of it,
+    kept because a reading never changes. """
 
     def __init__(self, kind, value, order, event=None, left=""):
         self.kind = kind
@@ -23,6 +24,7 @@ class Answer:
         self.order = order
         self.event = event
         self.left = left
+        self.read = {}
 
     def follows(self, other):
         """True when it was certainly given after the other: by knowledge, never by the clock."""
@@ -74,7 +76,7 @@ class Work:
         for limit in self.limits_on(step):
             for known in [k for k in self.cache if k[0] == limit]:
                 del self.cache[known]
-        if step in self.steps and self.steps[step]["kind"] == "action":
+        if step in self.steps and self.steps[step].get("repeats_steps"):
             self.cache = {}
 
     def limits_on(self, step_id):
