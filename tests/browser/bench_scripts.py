@@ -36,7 +36,7 @@ GEARS: Script = {
     "oil_base": ["synthetic-hydrocarbon"], "oil_v40": ["22"], "oil_v100": ["4.6"], "grease": ["nlgi-1"],
     "grease_base": ["synthetic-hydrocarbon"], "spot_test": ["no-change"], "agent": ["naphtha"],
     "agent_test": ["no-change"], "gears": ["sound"], "old": ["hardened"], "v_found": ["12.00"],
-    "i_found": [["0.362", "0.359", "0.361"]], "coast_found": [["1.5", "1.4", "1.5"]], "turn": ["stiff", "free"],
+    "i_found": [["0.362", "0.359", "0.361"]], "coast_found": [{"stopwatch": 3}], "turn": ["stiff", "free"],
     "backlash": [{"least": "0.07", "most": "0.11"}],
     "soak": [{"used": "naphtha", "amount": "5 mL"}],
     "oil_on": [{"used": "shelf oil A", "amount": "4 drops"}],
@@ -103,3 +103,18 @@ PLANS = {
     "rectifier-ratio": Plan(STACK, "cells|0|2/reverse", {"cells|0|1/forward": "210"},
                             {"wiring_photo|0|": "no camera allowed in this hall"}),
 }
+
+CHAIN_A: Script = {
+    **CONTACTS, "conditions": [{**CONDITIONS, "ambient": "23.4"}],
+    "nameplate.rated_force": ["0.30"], "nameplate.circuit_marked": ["2.3"],
+    "untouched": [{"v_plus": "11.2", "v_minus": "-11.0", "i": "0.500"}], "worked": CONTACTS["worked"][1:],
+    "force": [{"f": "0.30"}], "circuit": ["yes"],
+    "circuit_drop": [{"v_plus": "1.0423 V", "v_minus": "-1.0331 V", "i": {"text": "0.4500 A", "range": "5 A"}}],
+}
+"""House checks 6.7 A, in a full test of one sound contact."""
+
+CHAIN_C: Script = {
+    **DRUM, "first_stroke": ["4.10"], "pull_in": DRUM["pull_in"][1:], "drop_out": DRUM["drop_out"][1:],
+    "run_low": [CLEAN], "hand_turn": ["free"],
+}
+"""House checks 6.7 C, in a routine test of a sound drum."""

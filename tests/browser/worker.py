@@ -28,7 +28,8 @@ class Plan:
     """What the hand does beside answering.
 
     script: step id (or "nameplate.field") -> answers, one for each round that it comes up, the last used again; an
-    answer is a text, a list of repeats, {"text" or "texts", "range"}, a dict of cell or column -> text, a choice's id.
+    answer is a text, a list of repeats, {"text" or "texts", "range"}, {"stopwatch": number of times}, a dict of cell or
+    column -> text, a choice's id.
     reload: slot at which the page is closed and opened again with half the reading typed.
     slips: slot -> what is typed first and corrected; left: slot -> the reason in words.
     """
@@ -55,7 +56,6 @@ class Worker:
         self.rounds: dict[str, list[str]] = {}
         self.said: dict[str, list[str]] = {}
         self.screens = 0
-        self.reloaded = False
 
     # ---- moving
 
@@ -210,6 +210,13 @@ class Worker:
 
     def reading(self, slot: str, given: Any) -> None:
         """A reading: with its meter's range, by halves over a reload, or with a slip that is put right."""
+        if isinstance(given, dict) and "stopwatch" in given:
+            for _ in range(given["stopwatch"]):
+                self.press()
+                self.page.wait_for_timeout(120)
+                self.press()
+            self.take(slot)
+            return
         if self.look()["act"] == "start":
             self.hand.tap("Type the time instead")
         texts = given if isinstance(given, dict) else {"texts": given} if isinstance(given, list) else {"text": given}
@@ -221,8 +228,10 @@ class Worker:
         if slot in self.plan.slips:
             self.slip(slot, text)
             return
-        self.page.locator("#entry").press_sequentially(text) if self.reloaded and slot == self.plan.reload \
-            else self.hand.type("entry", text)
+        if slot == self.plan.reload:
+            self.page.locator("#entry").press_sequentially(text)    # behind the half that stands there
+        else:
+            self.hand.type("entry", text)
         self.take(slot)
 
     def range(self, name: str) -> None:
@@ -247,7 +256,6 @@ class Worker:
         self.hand.wait_for(title)
         assert self.hand.address() == place
         assert self.page.input_value("#entry") == half
-        self.reloaded = True
         return text[len(half):]
 
     def slip(self, slot: str, text: str) -> None:
@@ -283,18 +291,17 @@ def begin(hand: Hand, desk: Desk, number: str) -> None:
     hand.onward()
 
 
-def close(hand: Hand, outcome: str, customer: str = "A. Sample") -> None:
+def close(worker: Worker, outcome: str, customer: str = "A. Sample") -> None:
     """From the screen of the outcome to the signed job."""
+    hand = worker.hand
     assert f"At best: {outcome}\n" in hand.text() + "\n"
-    hand.onward()
-    hand.wait_for("Job ")
-    hand.onward()
-    hand.wait_for("Customer")
-    hand.type("name", customer)
-    hand.draw()
-    hand.onward()
-    hand.wait_for("Signature")
-    hand.draw()
-    hand.onward()
-    hand.wait_for("Job ")
+    for title in ("Job ", "Customer", "Signature", "Job "):
+        if title == "Signature":
+            hand.type("name", customer)
+        if hand.page.locator("#pad").count():
+            hand.draw()
+        hand.press()
+        hand.wait_for(title)
+        if worker.each is not None:
+            worker.each(worker)
     assert "Signed by " + TECHNICIAN in hand.text()
