@@ -11,7 +11,7 @@ if TYPE_CHECKING:
 
 
 class Looker:
-    """Called by a Worker on every screen.  scheme: "light" or "dark"; seen: what was looked at, "title or kind, key"."""
+    """Called by a Worker on every screen.  scheme: "light" or "dark"; seen: what was looked at, "kind, key"."""
 
     def __init__(self, scheme: str) -> None:
         self.scheme = scheme

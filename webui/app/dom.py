@@ -11,7 +11,7 @@ handlers = {}
 def start():
     """Builds the frame of the page and listens."""
     document.body.innerHTML = ('<a class="skip" href="#main" tabindex="-1">To the step</a>'
-                               '<header id="top"></header><main id="main" tabindex="-1"></main>'
+                               '<header id="top"></header><main id="main" tabindex="0"></main>'
                                '<footer id="foot"></footer><p id="said" class="said" role="status"></p>')
     document.addEventListener("click", _click)
     document.addEventListener("input", _input)
