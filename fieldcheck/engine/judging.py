@@ -64,7 +64,7 @@ def applies(work, when):
     field = when["field"]
     if field in work.steps:
         found = work.newest(field, 0, "")
-        return found is None or found[1].value.get("choice") in when["is"]
+        return found is None or found[1].value.get("choice") in ["unknown"] + when["is"]
     given = work.nameplate.get(field)
     if given is None or given.get("unknown"):
         return True

@@ -219,16 +219,27 @@ def reading_list(readings, meter=None, function="", range_name=None, ambient=Non
             for i in range(len(numbers))]
 
 
+def mixed_repeats():
+    """The OutOfRange of repeats of which only some are figures."""
+    return OutOfRange("some of the repeats are out of the meter's range and some are not", "",
+                      "repeat the set on a range that shows them all")
+
+
 def bound_of(readings, meter=None, function="", range_name=None):
     """(">" or "<", bound in SI or None) when a reading is only a bound, else None.
 
     An overload without a figure lies above the range named, else above the meter's largest; without a meter its
-    bound is unknown (None).
+    bound is unknown (None).  Of repeats that all lie beyond a bound the one that says least counts; OutOfRange when
+    only some do, for then neither their mean nor its bound is known.
     """
     kind = getattr(readings, "kind", "value")
-    for one in numbers_of(readings):
-        if one.bound:
-            return (one.bound, float(one.base))
+    numbers = numbers_of(readings)
+    sides = [one.bound for one in numbers if one.bound]
+    if sides:
+        if len(sides) < len(numbers) or [side for side in sides if side != sides[0]]:
+            raise mixed_repeats()
+        sizes = [float(one.base) for one in numbers]
+        return (sides[0], min(sizes) if sides[0] == ">" else max(sizes))
     if kind not in ("over", "under"):
         return None
     if kind == "under" or meter is None:

@@ -23,6 +23,10 @@ CONDITIONS = {
 """name -> (quantity, label, half-width in SI of an instrument not entered as a meter, rectangular: PRACTICE)."""
 
 
+MOST_ROWS = 500
+"""A table longer than this is a slip of the thumb.  One of no row would leave each of its limits out unseen."""
+
+
 def rows_of(work, step):
     """The row ids of a table or the single "" of another step; MissingInput when their number is not known."""
     rows = step.get("rows")
@@ -31,6 +35,9 @@ def rows_of(work, step):
     if rows.get("labels"):
         return rows["labels"]
     count = nameplate_value(work, rows["from"])
+    if count < 1.0 or count > MOST_ROWS or float(int(count)) != count:
+        raise MissingInput(["nameplate: " + nameplate_field(work, rows["from"])["label"]
+                            + " (a whole number from 1 to " + str(MOST_ROWS) + ")"])
     return [str(i + 1) for i in range(int(count))]
 
 
@@ -67,13 +74,20 @@ def nameplate_value(work, name):
         return given.get("choice") or given["text"]
     if field["quantity"] == "count":
         return parse_decimal(given["text"])
-    number = typed(given, field["quantity"], field.get("unit"))
-    return float(number.values[0].base)
+    return one_figure(given, field["quantity"], field.get("unit"), "nameplate: " + field["label"])
 
 
 def typed(value, quantity, unit):
     """The Entry of a value {"text", "unit"?}; unit: what is meant when none was typed."""
     return entry.read(value["text"], quantity, default_unit=value.get("unit") or unit)
+
+
+def one_figure(value, quantity, unit, label):
+    """The SI value of what must be a single figure; MissingInput for several, or for a mere bound ("OL", ">5 A")."""
+    read = typed(value, quantity, unit)
+    if len(read.values) != 1 or read.values[0].bound:
+        raise MissingInput([label + " (a single figure)"])
+    return float(read.values[0].base)
 
 
 class Lookup:
@@ -134,7 +148,7 @@ class Lookup:
         given = self.work.conditions.get(key)
         if not given:
             raise MissingInput([label])
-        value = float(typed(given, quantity, None).values[0].base)
+        value = one_figure(given, quantity, None, label)
         return influence(value, half_width / ROOT3, label) if half_width else value
 
     def _derived(self, value):
@@ -165,7 +179,7 @@ class Lookup:
         if kind == "sequence":
             return self._sequence(step, column)
         if kind == "choice":
-            value = self._answer(step, "").value["choice"]
+            value = self._answer(step, "").value.get("choice") or "unknown"
             if value == "unknown":
                 raise MissingInput([step["title"] + " (not known)"])
             return value
@@ -237,12 +251,14 @@ class Lookup:
 
     def _ambient(self):
         given = self.work.conditions.get("ambient")
-        return float(typed(given, "temperature", None).values[0].base) if given else None
+        return one_figure(given, "temperature", None, "ambient temperature") if given else None
 
     def _sequence(self, step, part):
         if part == "layout":
             return layout_of(self.work, step)["positions"]
         value = self._answer(step, "").value
+        if "seen" not in value or "start" not in value:
+            raise MissingInput([step["title"] + " (what the drum showed)"])
         if part == "pulses":
             return float(value.get("pulses") or len(value["seen"]))
         if part == "start":
@@ -270,12 +286,17 @@ def readings_of(value, quantity, unit):
     """The Entry of an answer's value: {"text"} as typed, or {"texts": [...]} one repeat each."""
     if value.get("texts"):
         numbers = []
+        bare = []
         for text in value["texts"]:
             read = typed({"text": text, "unit": value.get("unit")}, quantity, unit)
-            if read.kind in ("over", "under"):
-                return read
             numbers += list(read.values)
-        return numbers
+            if not read.values:
+                bare.append(read)
+        if bare and numbers:
+            raise meters.mixed_repeats()
+        return bare[0] if bare else numbers
+    if not value.get("text"):
+        raise MissingInput(["a figure"])
     return typed(value, quantity, unit)
 
 

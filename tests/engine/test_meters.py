@@ -152,3 +152,16 @@ def test_the_resolution_of_a_thermometer_is_a_difference_however_its_unit_is_wri
         {"function": "temperature", "quantity": "temperature", "ranges": [span]}]})
     read = meters.reading_value(entry.read("30.5", "temperature"), thermometer, "temperature")
     assert m.combined(read) == pytest.approx(0.5 / 3 ** 0.5, rel=1e-12)  # 5 counts of 0.1 K, rectangular (GUM 4.3.7)
+
+
+@pytest.mark.parametrize(("text", "bound"), [
+    (">200 >100 ohm", (">", 100.0)), ("<0.2 <0.5 ohm", ("<", 0.5)), (">200 ohm", (">", 200.0)),
+])
+def test_of_repeats_beyond_a_bound_the_one_that_says_least_counts(text, bound):
+    assert meters.bound_of(entry.read(text, "resistance"), METER, "resistance") == bound
+
+
+@pytest.mark.parametrize("text", ["0.3 >200 ohm", "<0.1 >200 ohm"])
+def test_repeats_of_which_only_some_are_figures_have_no_bound(text):
+    with pytest.raises(OutOfRange, match="some of the repeats"):
+        meters.bound_of(entry.read(text, "resistance"), METER, "resistance")
