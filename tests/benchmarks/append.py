@@ -14,7 +14,7 @@ from functools import partial
 from pathlib import Path
 
 from benchmarks.ratios import ROUNDS, Paired, Row, seconds
-from journal.devices_at_hand import NOW, Phone
+from devices_at_hand import NOW, Phone
 
 from fieldcheck.engine.texts import read
 from fieldcheck.journal.database import schema_text

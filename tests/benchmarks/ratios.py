@@ -6,6 +6,7 @@ A shared machine slows both alike within one round, so the ratio of a round says
 from __future__ import annotations
 
 import gc
+import resource
 import statistics
 import time
 from collections.abc import Callable
@@ -13,6 +14,13 @@ from dataclasses import dataclass
 
 ROUNDS = 9
 Work = Callable[[], object]
+Clock = Callable[[], float]
+
+
+def processor() -> float:
+    """Seconds of processor that this process and its finished children have used: waiting for others is left out."""
+    both = (resource.getrusage(resource.RUSAGE_SELF), resource.getrusage(resource.RUSAGE_CHILDREN))
+    return sum(one.ru_utime + one.ru_stime for one in both)
 
 
 @dataclass(frozen=True)
@@ -49,22 +57,22 @@ class Paired:
         return f"{self.ratio():.2f} ({low:.2f} to {high:.2f}), {ours:.3g} {unit} against {theirs:.3g} {unit}"
 
 
-def seconds(work: Work, loops: int = 1) -> float:
-    """Wall time of one call, the mean over `loops` of them; the collector rests meanwhile, as in `timeit`."""
+def seconds(work: Work, loops: int = 1, clock: Clock = time.perf_counter) -> float:
+    """Time of one call by a clock, the mean over `loops` of them; the collector rests meanwhile, as in `timeit`."""
     gc.collect()
     enabled = gc.isenabled()
     gc.disable()
     try:
-        start = time.perf_counter()
+        start = clock()
         for _ in range(loops):
             work()
-        return (time.perf_counter() - start) / loops
+        return (clock() - start) / loops
     finally:
         if enabled:
             gc.enable()
 
 
-def paired(ours: Work, theirs: Work, rounds: int = ROUNDS, loops: int = 1) -> Paired:
+def paired(ours: Work, theirs: Work, rounds: int = ROUNDS, loops: int = 1, clock: Clock = time.perf_counter) -> Paired:
     """Times both in turn; who goes first changes from round to round. One round before does not count."""
     ours()
     theirs()
@@ -72,11 +80,11 @@ def paired(ours: Work, theirs: Work, rounds: int = ROUNDS, loops: int = 1) -> Pa
     second: list[float] = []
     for number in range(rounds):
         if number & 1:
-            second.append(seconds(theirs, loops))
-            first.append(seconds(ours, loops))
+            second.append(seconds(theirs, loops, clock))
+            first.append(seconds(ours, loops, clock))
         else:
-            first.append(seconds(ours, loops))
-            second.append(seconds(theirs, loops))
+            first.append(seconds(ours, loops, clock))
+            second.append(seconds(theirs, loops, clock))
     return Paired(first, second)
 
 
