@@ -113,8 +113,9 @@ def area(label, name, value="", rows=3):
              h("textarea", {"id": name, "name": name, "rows": rows, "autocomplete": "off"}, value))
 
 
-def options(legend, name, choices, chosen=""):
-    """Large radio keys.  choices: [(id, label)] or [(id, label, why it cannot be chosen)]."""
+def options(legend, name, choices, chosen="", titled=False):
+    """Large radio keys.  choices: [(id, label)] or [(id, label, why it cannot be chosen)]; titled: the screen's title
+    says the legend already, so that only a screen reader needs it."""
     rows = []
     for one in choices:
         barred = one[2] if len(one) > 2 else ""
@@ -123,4 +124,4 @@ def options(legend, name, choices, chosen=""):
                       h("input", {"type": "radio", "id": ident, "name": name, "value": one[0],
                                   "checked": one[0] == chosen, "disabled": bool(barred)}),
                       h("span", one[1], h("span.note", barred) if barred else None)))
-    return h("fieldset.options", h("legend", legend), rows)
+    return h("fieldset.options", h("legend.said" if titled else "legend", legend), rows)

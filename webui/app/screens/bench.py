@@ -11,6 +11,8 @@ from .. import pen, store
 
 platform = window.platform
 VISIT_HOURS = 4         # conditions older than this are asked again
+read_steps = {}
+"""item id -> ids of steps; outlives the Bench, which is built anew when another phone's events arrive."""
 
 
 class Bench:
@@ -27,7 +29,7 @@ class Bench:
         self.names = {}
         self.after_write = None     # called with the slot's key once an answer is on the disk
         self.undoable = None        # (instance, index) of the answer just taken, while one tap may take it back
-        self.read = []              # ids of the steps whose instruction was read in this sitting
+        self.read = read_steps.setdefault(item.id, [])     # steps whose instruction was read in this sitting
 
     @property
     def flow(self):

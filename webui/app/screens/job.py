@@ -1,5 +1,7 @@
 """One job: its items, and what is left before it can be signed."""
 
+from fieldcheck.engine import calculated
+
 from .. import dom, parts
 from ..markup import NOTHING, address, h, join, link
 from ..screen import Screen
@@ -113,7 +115,18 @@ class Item(Screen):
                  h("div.more", link("Outcome", bench.place("outcome"), "quiet-key"),
                    link("Defect", bench.place("defect"), "quiet-key"),
                    link("Part used", bench.place("part"), "quiet-key"),
-                   link("Cool-down", bench.place("wait"), "quiet-key")), self.noted())
+                   link("Cool-down", bench.place("wait"), "quiet-key")), self.noted(),
+                 h("details.background", h("summary", "Also computed, not judged"),
+                   h("div", {"id": "computed"}, h("p.note", "Nothing yet: its readings are still to come."))))
+
+    def compute(self, *_):
+        """What the procedure computes beside its limits; after the path is on the glass, for it may take a while."""
+        if self.main.screen is not self:
+            return
+        rows = [h("div", h("dt", one["label"] + (" " + one["row"] if one["row"] else "")), h("dd", one["text"]))
+                for one in calculated.calculated(self.bench.work, self.bench.flow.last_round)]
+        if rows:
+            dom.fill("computed", h("dl.reason.computed", rows))
 
     def open_words(self):
         """The open entries by name."""
@@ -153,3 +166,4 @@ class Item(Screen):
 
     def shown(self):
         waiting.keep_counting()
+        dom.after_paint(self.compute)

@@ -74,7 +74,9 @@ class Measure(Step):
 
     def helper_keys(self):
         """Characters that a number pad lacks."""
-        keys = [("−", "−"), ("OL", "OL"), (">", ">")]
+        keys = [("−", "−")]
+        if self.function:
+            keys += [("OL", "OL"), (">", ">")]
         if self.repeats > 1:
             keys.append(("next ;", "; "))
         return h("div.helpers", [key(label, "insert", text, "helper") for label, text in keys])
@@ -194,7 +196,7 @@ class Measure(Step):
 
     def shown(self):
         Step.shown(self)
-        begun = self.known or bool(self.draft.get("entry"))
+        begun = self.known or bool(self.draft.get("entry")) and not self.draft.get("listed")
         if self.mode == "correct" or (self.mode == "open" and begun):
             dom.focus("entry")      # else the keyboard would hide what is to be read first
 
@@ -314,23 +316,16 @@ def state_of(bench, meter_id):
 
 
 def units_offered(column):
-    """Unit keys of a step: its own list, or the quantity's nearest, smallest first."""
-    given = column.get("units")
-    if given:
-        return list(given)
+    """Unit keys of a step, smallest first: the four around its own unit where there are more (one row, no cut key)."""
     own = column.get("unit")
-    names = list(units.quantity(column["quantity"]).units)
+    names = list(column.get("units") or units.quantity(column["quantity"]).units)
     if own and own not in names:
         names.insert(0, own)
-    if len(names) > 4:
-        kept = [own] if own else []
-        for one in names:
-            if one not in kept and len(kept) < 4:
-                kept.append(one)
-        names = kept
     sized = [(size_of(one), one) for one in names]
     sized.sort(key=first_of)
-    return [one[1] for one in sized]
+    names = [one[1] for one in sized]
+    first = max(0, min((names.index(own) if own else 0) - 1, len(names) - 4))
+    return names[first:first + 4]
 
 
 def first_of(pair):

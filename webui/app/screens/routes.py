@@ -3,7 +3,7 @@
 from browser import window
 
 from .. import store
-from . import added, gates, job, left, outcome, photo, sequence, signature, simple, timing, waiting
+from . import added, gates, job, left, outcome, photo, sequence, shelf, signature, simple, timing, waiting
 from . import bench as bench_room
 from .measure import Measure
 from .missing import Missing
@@ -93,6 +93,8 @@ def kind_of(instance, index):
         return simple.PlateChoice if step["field"].get("choices") else simple.Plate
     if step["kind"] == "table" and bench_room.column_of(step, index).get("timing"):
         return timing.Timing
+    if step["kind"] == "note" and step["id"] == shelf.STEP:
+        return shelf.ShelfNote
     return KINDS[step["kind"]]
 
 
@@ -106,6 +108,16 @@ def gate_before(place, bench, instance):
     cautions = bench.cautions_for(step["supply"], step)
     if cautions:
         return gates.Cautions(place, bench, step["supply"], cautions)
-    if step["kind"] in ("measure", "table", "timing", "sequence") and bench.conditions_due():
-        return gates.Conditions(place, bench.job, True)
+    if reads(step) and bench.conditions_due():
+        gate = gates.Conditions(place, bench.job, True)
+        gate.supply = bench.supply_now()
+        gate.entries = len(bench.flow.open_entries)
+        return gate
     return None
+
+
+def reads(step):
+    """True for a step that reads the item itself; what is copied from a list or a label needs no conditions."""
+    if step["kind"] in ("timing", "sequence"):
+        return True
+    return bool(step.get("meter")) or [one for one in step.get("columns") or [] if one.get("meter")] != []

@@ -31,7 +31,7 @@ class Choice(Step):
         rows = [(one["id"], one["label"]) for one in self.step["choices"]]
         answer = self.answer()
         old = answer.value.get("choice") if answer is not None and not answer.left else ""
-        return options(self.step["title"], "choice", rows, self.draft.get("choice") or old or "")
+        return options(self.step["title"], "choice", rows, self.draft.get("choice") or old or "", True)
 
     def value(self, arg):
         chosen = dom.chosen("choice")
@@ -88,7 +88,7 @@ class PlateChoice(Choice):
         old = ""
         if answer is not None and not answer.left:
             old = answer.value.get("choice") or "unknown"
-        return options(self.step["title"], "choice", rows, self.draft.get("choice") or old)
+        return options(self.step["title"], "choice", rows, self.draft.get("choice") or old, True)
 
     def value(self, arg):
         chosen = Choice.value(self, arg)["choice"]

@@ -15,6 +15,7 @@ from .said import Said
 from .words import WORDS, answer_text, history, value_words
 
 platform = window.platform
+PHASES = {"supply": "change of supply"}
 DRAFT_AFTER = 300       # milliseconds from the last keystroke until a draft is on its way to the disk
 
 
@@ -73,11 +74,12 @@ class Step(Screen):
         step = self.step
         number = self.instance.round
         when = "as found" if step["phase"] == "as found" and number == 0 else \
-            "after service " + str(number) if number > 0 else step["phase"]
-        return h("div.screen.step", h("p.path", link(self.bench.title(), self.bench.place(), "plain"), ", " + when),
+            "after service " + str(number) if number > 0 else PHASES.get(step["phase"]) or step["phase"]
+        return h("div.screen.step", h("p.path.line", link(self.bench.title(), self.bench.place(), "plain"),
+                                      h("span.when", when)),
                  self.heading(),
                  h("p.hold", "Hold point: nothing after it before it is done") if self.instance.hold else NOTHING,
-                 self.instruction(),
+                 h("div", {"id": "instruction"}, self.instruction()),
                  h("div", {"id": "work"}, self.work()),
                  h("details.background", h("summary", "Why"), h("p", step["why"])) if step.get("why") else NOTHING,
                  h("div", {"id": "more"}, self.more()))
@@ -92,6 +94,8 @@ class Step(Screen):
     def instruction(self):
         """What to do, where to put the probes, when to stop; folded away once read in this sitting."""
         rest = [h("p.do", self.step["text"]), self.drawing()]
+        if self.mode == "taken":            # what it means comes first now
+            return h("details.background.again", h("summary", "What to do"), rest, self.aborts(), self.entry_words())
         if self.known:
             return join([h("details.background.again", h("summary", "What to do"), rest), self.aborts(),
                          self.entry_words()])
@@ -128,7 +132,9 @@ class Step(Screen):
             return self.taken()
         answer = self.answer()
         left = h("p.left", "Not done: " + answer.left) if answer is not None and answer.left else NOTHING
-        return join([left, self.inputs(), self.reason_field() if self.mode == "correct" else NOTHING,
+        listed = self.draft.get("listed") or ""
+        return join([left, h("p.opens", "Shelf list. " + listed) if listed else NOTHING, self.inputs(),
+                     self.reason_field() if self.mode == "correct" else NOTHING,
                      h("p.refusal", {"id": "refusal", "role": "alert"}, "")])
 
     def inputs(self):
@@ -293,7 +299,9 @@ class Step(Screen):
             self.bench.undoable = (self.instance, self.index)
             aio.run(self.on_next(""))
             return
+        dom.fill("instruction", self.instruction())
         dom.fill("work", self.taken())
+        dom.scroll_up()
         self._set_thumb()
         dom.text("thumb", self.thumb[0])
         dom.attribute("thumb", "data-do", self.thumb[1])

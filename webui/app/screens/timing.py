@@ -177,7 +177,8 @@ class Timing(Measure):
         count = max(1, len(read.values))
         if count != self.repeats:
             wanted = "one time is" if self.repeats == 1 else str(self.repeats) + " times are"
-            raise EntryError(wanted + " wanted here, " + str(count) + " typed", "", "type as many, a space between them")
+            raise EntryError(wanted + " wanted here, " + str(count) + " typed", "",
+                             "type as many, a space between them")
         value = {"text": text, "unit": self.unit}
         if self.draft.get("times") and text == times_text(self.draft["times"]):
             value["laps"] = [{"text": seconds_text(one)} for one in self.draft.get("laps") or []]

@@ -102,7 +102,9 @@ def distance_words(work, judged, last):
         if edge is not None:
             gaps.append(abs(convert(edge) - convert(verdict.value)))
     words = []
-    if gaps:
+    if gaps and min(gaps) == 0.0:
+        words.append("on the limit")
+    elif gaps:
         words.append(figures.significant(min(gaps), 2) + ("\u202f" + unit if unit else "") + " from the limit")
     if last is not None:
         words.append("last time " + figures.significant(convert(last), 3) + ("\u202f" + unit if unit else ""))
