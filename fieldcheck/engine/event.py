@@ -35,6 +35,12 @@ JOB_TYPES = {
 AFTER_SIGNING = ("record.issued", "job.handed")
 """Events of a job that a signature need not cover and that do not reopen it."""
 
+_FORMS = {"round": (int, "a whole number"), "n": (int, "a whole number"), "active": (bool, "true or false"),
+          "value": (dict, "an object"), "heads": (dict, "an object"), "items": (list, "a list"),
+          "identities": (list, "a list"), "functions": (list, "a list"), "competences": (list, "a list"),
+          "cautions": (list, "a list"), "between": (list, "a list")}
+"""Form of what an event must hold, where it is no text."""
+
 ANSWER_KINDS = ("confirm", "choice", "note", "measure", "table", "sequence", "timing", "action", "photograph",
                 "nameplate")
 
@@ -71,14 +77,27 @@ class Event:
 
 
 def check_kind(fields):
-    """Refuses (EventError) an event that is of no known kind, or whose data lack what its kind needs."""
+    """Refuses (EventError) an event of no known kind, or whose data lack what it needs or hold it in another form."""
     where = fields["type"]
     wanted = (JOB_TYPES if fields["job"] else WORKSHOP_TYPES).get(where)
     if wanted is None:
         raise EventError('"' + where + '" is not a kind of event of ' + ("a job" if fields["job"] else "the workshop"))
+    _check_data(fields["data"], wanted, where)
+    if where == "job.opened":
+        for one in fields["data"]["items"]:
+            if not isinstance(one, dict):
+                raise EventError('one of its "items" is not an object', where)
+            _check_data(one, JOB_TYPES["item.added"], where)
+
+
+def _check_data(data, wanted, where):
+    """The fold indexes by these values: one of another form would stop it for ever, in a journal that never forgets."""
     for name in wanted:
-        if name not in fields["data"]:
+        if name not in data:
             raise EventError('its data lack "' + name + '"', where)
+        right, word = _FORMS.get(name, (str, "a text"))
+        if not isinstance(data[name], right) or (right is int and isinstance(data[name], bool)):
+            raise EventError('its "' + name + '" is not ' + word, where)
 
 
 def make(device, seq, prev, at, offset, person, job, seen, kind, data):

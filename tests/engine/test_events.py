@@ -150,3 +150,19 @@ def test_the_fold_gives_the_same_state_for_any_order_of_the_same_events(plan, ra
     shuffled = list(pairs)
     random.shuffle(shuffled)
     assert summary(events.fold(shuffled + pairs[:3])) == forward
+
+
+@pytest.mark.parametrize(("kind", "data", "words"), [
+    ("answer.given", answer("1") | {"item": []}, 'its "item" is not a text'),
+    ("answer.given", answer("1") | {"round": "x"}, 'its "round" is not a whole number'),
+    ("answer.given", answer("1") | {"round": True}, 'its "round" is not a whole number'),
+    ("answer.given", answer("1") | {"value": "1"}, 'its "value" is not an object'),
+    ("job.opened", OPENED | {"items": 5}, 'its "items" is not a list'),
+    ("job.opened", OPENED | {"items": [5]}, 'one of its "items" is not an object'),
+    ("job.opened", OPENED | {"items": [{"item": "i"}]}, 'its data lack "equipment"'),
+    ("decision.made", {"between": 5, "keep": "", "reason": ""}, 'its "between" is not a list'),
+])
+def test_an_event_that_would_stop_the_fold_is_refused(kind, data, words):
+    with pytest.raises(EventError) as caught:
+        Pen("a").write(JOB, kind, data)
+    assert words in str(caught.value)
