@@ -32,6 +32,17 @@ def statement(judged, value, phase):
              h("div.why", {"id": "why-" + judged.key, "hidden": True}))
 
 
+def is_drawn(judged):
+    """True where a scale says more than the words: a yes or no (0 or 1, exact, against 0 or 1) is none."""
+    verdict = judged.verdict
+    if verdict.value is None:
+        return False
+    for one in (verdict.value, verdict.at_least, verdict.at_most):
+        if one is not None and one not in (0.0, 1.0):
+            return True
+    return verdict.U > 0.0
+
+
 def verdict_scale(work, judged, found=None, last=None):
     """The drawing of a verdict; found, last: SI values or None."""
     unit, convert = judging.display(work, judged)

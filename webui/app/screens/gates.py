@@ -78,6 +78,7 @@ class Conditions(Screen):
         self.gate = gate
         self.thumb = ("Take", "take")
         self.half = {}
+        self.warned = False         # an empty page was taken once: a slip of the thumb, or meant
 
     def body(self):
         event = self.job.conditions.event
@@ -113,6 +114,10 @@ class Conditions(Screen):
                 dom.focus(name)
                 return
             data[name] = {"text": text, "unit": read.unit.symbol if read.unit is not None else unit}
+        if not data and not self.warned:
+            self.warned = True
+            dom.fill("refusal", join(["Nothing is typed yet. Take again if nothing of this can be read here."]))
+            return
         meter = dom.chosen("meter")
         if meter:
             data["meter"] = meter

@@ -321,6 +321,8 @@ def units_offered(column):
     names = list(column.get("units") or units.quantity(column["quantity"]).units)
     if own and own not in names:
         names.insert(0, own)
+    if own:                                 # nobody reads an oil in m²/s
+        names = [one for one in names if size_of(one) <= 1000.0 * size_of(own)]
     sized = [(size_of(one), one) for one in names]
     sized.sort(key=first_of)
     names = [one[1] for one in sized]

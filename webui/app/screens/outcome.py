@@ -36,7 +36,7 @@ class Outcome(Screen):
             judged = left or found
             before = found.verdict.value if left is not None and found is not None and not found.verdict.bound else None
             rows.append(parts.statement(judged, judging.printed(work, judged), ""))
-            if judged.verdict.value is not None:
+            if parts.is_drawn(judged):
                 rows.append(parts.verdict_scale(work, judged, before, self.bench.last_value(judged)))
         return h("div.screen", h("p.path", self.bench.title()), h("h1", "Outcome"),
                  h("p.do", "At best: " + self.best), self.reason_list(),

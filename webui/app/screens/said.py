@@ -34,7 +34,7 @@ class Said:
             return None
         one = self.bench.judge(self.queue.pop(0), self.number)
         self.judged.append(one)
-        if one.verdict.value is not None:
+        if parts.is_drawn(one):
             self.undrawn.append(one)
         self.printed[one.key] = judging.printed(self.bench.work, one)
         return one
@@ -59,6 +59,8 @@ class Said:
         if one.verdict.value is None:
             row = " " + one.row if one.row not in ("", "?") else ""
             return h("p.note", one.limit["label"] + row + ": " + one.verdict.reason)
+        if not parts.is_drawn(one):
+            return parts.statement(one, self.printed[one.key], self.phase)
         return join([parts.statement(one, self.printed[one.key], self.phase),
                      h("div.scale-place", {"id": "draw-" + one.key}),
                      h("p.note", {"id": "distance-" + one.key})])

@@ -82,8 +82,9 @@ class Sequence(Step):
         """Count mode: so many pulses, and what the drum shows at the end."""
         return join([h("p.ask", "Started at " + self.draft["start"] + ". Count the pulses."),
                      h("p.stopwatch", {"id": "count"}, str(self.draft.get("pulses") or 0)),
-                     h("div.helpers", [key("Pulse", "pulse", "", "helper.wide"),
-                                       key("One less", "less", "", "helper")]),
+                     key("Pulse", "pulse", "", "pad.wide"),
+                     h("div.helpers", [key("One less", "less", "", "helper"),
+                                       key("Tap each instead", "each", "", "helper")]),
                      field("Pulses", "pulses", str(self.draft.get("pulses") or ""), inputmode="numeric"),
                      h("p.ask", "Shown at the end: ", h("strong", {"id": "end"}, self.draft.get("end") or "?")),
                      self.pads("end-at")])
@@ -93,6 +94,8 @@ class Sequence(Step):
 
     def on_start_at(self, symbol):
         self.keep("start", symbol)
+        dom.fill("instruction", self.instruction())     # folded away: the pads come under the thumb
+        dom.scroll_up()
         self.redraw()
 
     def on_tap(self, symbol):
@@ -112,6 +115,10 @@ class Sequence(Step):
 
     def on_count(self, arg):
         self.keep("mode", "count")
+        self.redraw()
+
+    def on_each(self, arg):
+        self.keep("mode", "each")
         self.redraw()
 
     def on_pulse(self, arg):

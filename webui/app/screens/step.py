@@ -15,6 +15,7 @@ from .said import Said
 from .words import WORDS, answer_text, history, value_words
 
 platform = window.platform
+LONG = 24               # characters of an answer that is shown smaller
 PHASES = {"supply": "change of supply"}
 DRAFT_AFTER = 300       # milliseconds from the last keystroke until a draft is on its way to the disk
 
@@ -96,7 +97,7 @@ class Step(Screen):
         rest = [h("p.do", self.step["text"]), self.drawing()]
         if self.mode == "taken":            # what it means comes first now
             return h("details.background.again", h("summary", "What to do"), rest, self.aborts(), self.entry_words())
-        if self.known:
+        if self.known or self.draft.get("start") is not None:
             return join([h("details.background.again", h("summary", "What to do"), rest), self.aborts(),
                          self.entry_words()])
         return join([rest, self.aborts(), self.entry_words()])
@@ -151,7 +152,8 @@ class Step(Screen):
     def taken(self):
         """What was taken and what it means."""
         answer = self.answer()
-        shown = [h("p.taken", {"id": "taken"}, answer_text(self.step, self.column, answer.value)),
+        words = answer_text(self.step, self.column, answer.value)
+        shown = [h("p.taken" + (".long" if len(words) > LONG else ""), {"id": "taken"}, words),
                  self.meter_words(answer.value)]
         if not self.said.judged:
             self.said.begin(self.candidates())
