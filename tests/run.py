@@ -65,7 +65,9 @@ def run_tests(arguments: list[str], full: bool) -> tuple[int, int]:
         if re.search(r"\d+ (passed|failed|error)", line):
             last = line
     process.wait()
-    counts = {word: int(number) for number, word in re.findall(r"(\d+) (passed|failed|error)", last)}
+    counts = {word: int(number) for number, word in re.findall(r"(\d+) (passed|failed|error|skipped)", last)}
+    if counts.get("skipped"):
+        print(f"skipped tests: {counts['skipped']}", flush=True)
     failed = counts.get("failed", 0) + counts.get("error", 0)
     if process.returncode not in (0, 1) or not counts or (process.returncode and not failed):
         failed += 1

@@ -11,6 +11,8 @@ from werkzeug.exceptions import UnsupportedMediaType
 
 from fieldcheck.engine import texts as event_texts
 from fieldcheck.engine.errors import EventError
+from fieldcheck.engine.event import check_kind
+from fieldcheck.journal import quick
 from fieldcheck.journal.forms import Head
 
 Json = dict[str, Any]   # a body may hold anything; each function below says what it takes out of it
@@ -59,10 +61,26 @@ def batch(found: Json) -> Batch:
     if not 0 < len(sent) <= EVENTS_IN_A_BATCH:
         raise EventError(f"a batch holds 1 to {EVENTS_IN_A_BATCH} events, not {len(sent)}", "events",
                          "send them in several batches")
+    for place, text in enumerate(sent):
+        _known_kind(text, f"events[{place}]")
     signatures = found.get("signatures", {})
     if not isinstance(signatures, dict) or not all(isinstance(one, str) for one in signatures.values()):
         raise EventError('"signatures" must be texts by event hash', "body", AS_SENT)
     return _text(found, "device", "body"), sent, head_of(found), signatures
+
+
+def _known_kind(text: str, where: str) -> None:
+    """Refuses (EventError) at the door what no fold could read; malformed texts are the journal's to refuse."""
+    try:
+        event = quick.read(text)
+    except EventError:
+        return
+    if not isinstance(event, dict) or not isinstance(event.get("data"), dict) or not isinstance(event.get("type"), str):
+        return
+    try:
+        check_kind({"job": "", **event})
+    except EventError as error:
+        raise EventError(error.what, where, AS_SENT) from error
 
 
 def enrolment(found: Json) -> Batch:

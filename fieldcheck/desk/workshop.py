@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import logging
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -11,7 +12,7 @@ from typing import Any, Protocol
 
 from fieldcheck import __version__
 from fieldcheck.engine import events, texts
-from fieldcheck.engine.errors import NotFound
+from fieldcheck.engine.errors import EventError, NotFound
 from fieldcheck.journal.database import FILE, JournalError
 from fieldcheck.journal.journal import Journal
 from fieldcheck.keys.devices import DeviceKey, load_device_key, make_device_key
@@ -71,6 +72,7 @@ class Workshop:
         self._lock = threading.RLock()
         self._state = events.State()
         self._cursor = 0
+        self.unreadable: dict[str, str] = {}
         self._parts: dict[str, dict[str, Any]] = {}
 
     @contextmanager
@@ -84,10 +86,19 @@ class Workshop:
         while True:
             stored = self.journal.events(self._cursor, limit=READ_AT_ONCE)
             for one in stored:
-                self._state.add(one.hash, one.text)
+                self._take(one.hash, one.text)
                 self._cursor = one.cursor
             if len(stored) < READ_AT_ONCE:
                 return
+
+    def _take(self, digest: str, text: str) -> None:
+        """One event into the state; one that no fold can read is set aside, so that it cannot hold up the rest."""
+        try:
+            self._state.add(digest, text)
+        except EventError as error:
+            if digest not in self.unreadable:
+                self.unreadable[digest] = str(error)
+                logging.getLogger(__name__).warning("event set aside hash=%s", digest)
 
     def part(self, digest: str) -> dict[str, Any]:
         """A compiled part by its SHA-256, of this rulebook or of an earlier one."""

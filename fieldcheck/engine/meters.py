@@ -82,6 +82,9 @@ def _range(data, quantity, where):
 
 
 def _function(data, where):
+    for key in ("function", "quantity"):
+        if not isinstance(data, dict) or not isinstance(data.get(key), str):
+            raise FieldcheckError("a function needs its " + key, where, "enter it at the desk")
     where = where + " " + data["function"]
     ranges = [_range(one, data["quantity"], where) for one in data.get("ranges") or []]
     if not ranges:
@@ -90,9 +93,21 @@ def _function(data, where):
     return Function(data["function"], data["quantity"], tuple(ranges), _number(data, "leads", "resistance", where))
 
 
+def _is_day(text):
+    """True for a date in ISO form, so that dates compare as texts."""
+    if not isinstance(text, str) or len(text) < 10:
+        return False
+    return text[4] + text[7] == "--" and (text[:4] + text[5:7] + text[8:10]).strip("0123456789") == ""
+
+
 def meter(data):
     """The Meter of its data (see the head of this module).  FieldcheckError names the key that does not do."""
+    if not isinstance(data.get("tag"), str):
+        raise FieldcheckError("a meter needs a tag", "meter", "enter it at the desk")
     where = "meter " + data["tag"]
+    for key in ("calibrated", "due"):
+        if not _is_day(data.get(key) or "0000-00-00"):
+            raise FieldcheckError(key + " is no date", where, "write it as 2026-03-01")
     rated = data.get("rated") or {}
     tempco = rated.get("tempco") or "0.1"
     return Meter(data.get("id", ""), data["tag"], data.get("name", ""),

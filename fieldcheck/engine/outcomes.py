@@ -17,11 +17,6 @@ REASONS_NOT_EXAMINED = ("no access", "no time", "permission refused", "awaiting 
 DEFECT_LEVELS = ("stop use", "repair before next use", "watch")
 
 
-def final_round(work, flow):
-    """The round whose verdicts count at the end."""
-    return flow.last_round
-
-
 def rows(work, flow):
     """Every limit of the item as found and as left: list of (key, found Judged or None, left Judged or None).
 
@@ -29,7 +24,7 @@ def rows(work, flow):
     as found stands.
     """
     result = []
-    last = final_round(work, flow)
+    last = flow.last_round
     for limit in work.part["limits"]:
         if not judging.holds(work, limit):
             continue
@@ -77,10 +72,10 @@ def bounded(work, flow, judged_rows=None):
             bound(2 if limit.get("bounds") == UNSERVICEABLE and statement == verdicts.FAIL else 1, said)
     _from_steps(work, flow, bound)
     best = (SERVICEABLE, RESTRICTED, UNSERVICEABLE)[worst]
-    allowed = [one for one in OUTCOMES[worst:3]] if flow.complete else [UNSERVICEABLE]
     if flow.open_entries:
-        allowed = []
-    return best, reasons, allowed + [NOT_EXAMINED] if not flow.open_entries else []
+        return best, reasons, []
+    allowed = list(OUTCOMES[worst:3]) if flow.complete else [UNSERVICEABLE]
+    return best, reasons, allowed + [NOT_EXAMINED]
 
 
 def _from_steps(work, flow, bound):

@@ -120,10 +120,16 @@ def status(work, instance):
     if whole is not None and whole.left:
         return LEFT, [], whole.left
     open_cells = []
+    reasons = []
     for index in instance.indexes:
-        if work.at(step_id, instance.round, index) is None:
+        answer = work.at(step_id, instance.round, index)
+        if answer is None:
             open_cells.append(index)
-    return (TO_DO if open_cells else TAKEN), open_cells, ""
+        elif answer.left and answer.left not in reasons:
+            reasons.append(answer.left)
+    if open_cells:
+        return TO_DO, open_cells, ""
+    return (LEFT if reasons else TAKEN), [], "; ".join(reasons)
 
 
 def included(work, step):

@@ -33,6 +33,13 @@ WANTED = (
 )
 
 
+quick = []
+"""At most one reader that the phone brings along: text -> the value, or None where it leaves the text to `read`.
+
+The browser's own is some thirty times faster. It may give a value only where `read` gives the same one.
+"""
+
+
 def size(text):
     """How many bytes the text takes as UTF-8; refuses half of a surrogate pair (EventError)."""
     if text.isascii():
@@ -142,6 +149,10 @@ def read(text, limit=LIMIT):
     """
     if not isinstance(text, str):
         raise EventError("an event must be a text")
+    if quick and limit is not None and len(text) * 4 <= limit:
+        value = quick[0](text)
+        if value is not None:
+            return value
     length = size(text)
     if limit is not None and length > limit:
         raise EventError("the text takes " + str(length) + " bytes, more than " + str(limit))

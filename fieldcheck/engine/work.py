@@ -5,7 +5,7 @@ everything is the same.
 """
 
 from fieldcheck.engine import events, meters
-from fieldcheck.engine.errors import NotFound
+from fieldcheck.engine.errors import FieldcheckError, NotFound
 from fieldcheck.engine.formulas import names_in
 
 TO_DO = "to do"
@@ -154,15 +154,34 @@ def of_item(state, job, item, part, on):
     if job.conditions.event is not None:
         work.conditions = job.conditions.event.data
     add_meters(work, state)
+    _entries_in_dispute(work, state, job, item)
     return work
 
 
+def _entries_in_dispute(work, state, job, item):
+    """Entries of the job and the workshop on which a verdict may rest, and of which two stand unsettled."""
+    if job.conditions.rivals:
+        work.conflicts.append("conditions")
+    tables = state.workshop.entries
+    if item.equipment in tables["equipment"] and tables["equipment"][item.equipment].rivals:
+        work.conflicts.append("nameplate of the equipment")
+    for answer in work.answers.values():
+        slot = tables["meter"].get(answer.value.get("meter") or "")
+        if slot is not None and slot.rivals:
+            name = "meter " + slot.rivals[-1].data["tag"]
+            if name not in work.conflicts:
+                work.conflicts.append(name)
+
+
 def add_meters(work, state):
-    """Gives the work every meter that the workshop has entered."""
+    """Gives the work every meter that the workshop has entered; one whose entry makes no sense counts as no meter."""
     for data in state.workshop.all("meter"):
         described = dict(data)
         described["id"] = data["meter"]
-        work.meters[data["meter"]] = meters.meter(described)
+        try:
+            work.meters[data["meter"]] = meters.meter(described)
+        except FieldcheckError:
+            continue
 
 
 def answer_of(event):

@@ -331,3 +331,15 @@ def test_the_phones_page_is_asked_for_anew_and_hashed_files_are_kept(desk):
 @pytest.mark.parametrize("path", ["/phone/a/none.js", "/phone/../workshop/journal.db", "/phone/%2e%2e/journal.db"])
 def test_nothing_else_is_handed_out(desk, path):
     assert desk.get(path).status_code == 404
+
+
+@pytest.mark.parametrize(("kind", "data", "said"), [
+    ("answer.dreamt", {}, "is not a kind of event"),
+    ("customer.entered", {"customer": "c"}, "lack"),
+    ("person.entered", {"person": "p", "name": "n", "competences": 5, "active": True}, "competences"),
+])
+def test_an_event_that_no_fold_can_read_is_refused_at_the_door_and_the_desk_goes_on(desk, phone, kind, data, said):
+    phone.write(kind, data)
+    answer = push(desk, phone)
+    assert 400 <= answer.status_code < 500 and said in answer.get_json()["error"]["what"]
+    assert desk.get("/api/jobs").status_code == 200

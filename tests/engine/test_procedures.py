@@ -4,7 +4,7 @@ import copy
 
 import pytest
 
-from fieldcheck.engine import assess, outcomes, procedures
+from fieldcheck.engine import assess, events, outcomes, procedures, work
 from fieldcheck.engine.errors import FieldcheckError
 
 
@@ -123,3 +123,40 @@ def test_what_cannot_be_read_is_refused_with_its_place():
     with pytest.raises(FieldcheckError) as refused:
         run(read("12 volts"))
     assert refused.value.where == "r"
+
+
+def table_part():
+    part = copy.deepcopy(PART)
+    part["steps"].insert(4, step("last", "as left", "isolated", kind="table", rows={"labels": ["a", "b"]}, columns=[
+        {"id": "r", "title": "r", "quantity": "resistance", "unit": "mohm", "meter": "ohms"}]))
+    return part
+
+
+def test_a_closing_table_whose_cells_were_left_one_by_one_counts_as_left_and_bounds_the_outcome():
+    left = [{"step": "last", "index": cell, "reason": "no light"} for cell in ("a/r", "b/r")]
+    said = run(act("cover_off"), read("20"), act("cover_on"), part=table_part(), left=left)
+    assert said["complete"] and said["outcome"] == "serviceable with restrictions"
+    assert "not done: last (no light)" in said["reasons"]
+
+
+def test_two_unsettled_entries_of_a_meter_in_use_or_of_the_conditions_are_a_conflict_of_the_item():
+    state, phone, other = disputed()
+    job = state.jobs["j" * 26]
+    made = work.of_item(state, job, job.items["i"], PART, "2026-06-01")
+    assert {"meter M1", "conditions"} <= set(made.conflicts)
+    assert outcomes.closing(made)[2] == "unserviceable"
+
+
+def disputed():
+    """A job in which two phones, neither of which saw the other, entered one meter and took the conditions."""
+    from test_events import OPENED, Pen
+    one, two = Pen("a"), Pen("b")
+    job = "j" * 26
+    pairs = [one.write(job, "job.opened", OPENED)]
+    two.learn(*pairs)
+    for pen in (one, two):
+        pairs.append(pen.write("", "meter.entered", {"meter": "m", **METER}))
+        pairs.append(pen.write(job, "conditions.taken", {"ambient": {"text": "20", "unit": "degC"}}))
+    pairs.append(one.write(job, "answer.given", {"item": "i", "step": "r", "round": 0, "index": "", "kind": "measure",
+                                                 "value": {"text": "20", "unit": "mohm", "meter": "m"}}))
+    return events.fold(pairs), one, two
