@@ -219,6 +219,38 @@ window.platform = (function () {
     return ''
   }
 
+  // ---- plain JSON ---------------------------------------------------------------------------------------------
+
+  // Is this a JSON text that JSON.parse reads exactly as engine/texts.py does? "No" is always a safe answer: escapes,
+  // surrogates, numbers that are not short integers, blanks, keys twice or of an unusual kind are left to Python.
+  const UNUSUAL = /[\\\ud800-\udfff]|__proto__|hasOwnProperty/
+  const UNUSUAL_BETWEEN = /[\s.E]|-0|[0-9]e|[0-9]{16}/
+  const DEPTH = 32
+
+  function isPlain(text) {
+    if (UNUSUAL.test(text)) return false
+    const between = text.split('"').filter((_, number) => (number & 1) === 0).join('')
+    if (UNUSUAL_BETWEEN.test(between)) return false
+    try {
+      return keysIn(JSON.parse(text), 0) === between.split(':').length - 1
+    } catch (error) {
+      return false
+    }
+  }
+
+  // How many keys a value holds, one inside the other; NaN where one of them might change its place or the levels are
+  // too many. A key that stands twice in the text is counted once, and so gives the text away.
+  function keysIn(value, depth) {
+    if (typeof value !== 'object' || value === null) return 0
+    if (depth >= DEPTH) return NaN
+    let count = 0
+    for (const key of Object.keys(value)) {
+      if (!Array.isArray(value)) count += /^[\x20-\x7f]+$/.test(key) && !/^[0-9]+$/.test(key) ? 1 : NaN
+      count += keysIn(value[key], depth + 1)
+    }
+    return count
+  }
+
   return {
     withLock: work => navigator.locks.request(LOCK, () => work()),   // gives what work (an async def) gives
     append, addForeign, markSent,
@@ -258,6 +290,7 @@ window.platform = (function () {
     dropUrl: url => URL.revokeObjectURL(url),        // not a promise
     fetchJson, downloadText,
 
+    isPlain: text => isPlain(String(text)),          // not a promise
     loadChunk: name => window.fieldcheckChunks.load(String(name)),   // "screens", "physics", "physics.windings"
     buzz: ms => Boolean(navigator.vibrate && navigator.vibrate(Number(ms))),       // not a promise
     monotonic: () => performance.now(),              // milliseconds since the page began; not a promise

@@ -17,12 +17,12 @@ from functools import partial
 from pathlib import Path
 
 import pikepdf
-
 from benchmarks.ratios import ROUNDS, Row, at_most, paired, processor
+from trial_job import Trial, worked_item
+
 from fieldcheck.journal.hashing import sha256
 from fieldcheck.records import data as record_data
 from fieldcheck.records import document, html, pdf, typefaces
-from trial_job import Trial, worked_item
 
 ITEMS = 4           # of the job that fills so many pages,
 DEFECTS = 4        # with these on top

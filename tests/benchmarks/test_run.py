@@ -5,7 +5,6 @@ from __future__ import annotations
 import re
 
 import pytest
-
 from benchmarks import run
 from benchmarks.ratios import Paired, Row, at_most, table
 

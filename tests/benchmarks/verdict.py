@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from benchmarks import propagation
 from benchmarks.ratios import ROUNDS, Row, paired
+
 from fieldcheck import rulebook
 from fieldcheck.engine import assess, judging, outcomes
 
