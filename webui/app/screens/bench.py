@@ -27,6 +27,7 @@ class Bench:
         self._flow = None
         self.before = {}
         self.names = {}
+        self.asked = ""             # id of the step whose answer is being judged
         self.after_write = None     # called with the slot's key once an answer is on the disk
         self.undoable = None        # (instance, index) of the answer just taken, while one tap may take it back
         self.read = read_steps.setdefault(item.id, [])     # steps whose instruction was read in this sitting
@@ -120,6 +121,7 @@ class Bench:
         """
         work = self.work
         found = []
+        self.asked = step_id
         wanted = work.limits_on(step_id)
         for limit in self.part["limits"]:
             if limit["id"] not in wanted or not judging.holds(work, limit):
@@ -167,8 +169,10 @@ class Bench:
         return True
 
     def answered(self, step_id, number, index):
-        """True when a question was answered or left at a round or before."""
-        for n in range(number, -1, -1):
+        """True when a question was answered or left at a round or before; what is asked just now counts at its own
+        round only, for it is being repeated."""
+        last = number - 1 if step_id == self.asked else -1
+        for n in range(number, last, -1):
             if self.work.at(step_id, n, index) is not None or self.work.at(step_id, n, "") is not None:
                 return True
         return False

@@ -117,11 +117,12 @@ class Item(Screen):
                    link("Part used", bench.place("part"), "quiet-key"),
                    link("Cool-down", bench.place("wait"), "quiet-key")), self.noted(),
                  h("details.background", h("summary", "Also computed, not judged"),
-                   h("div", {"id": "computed"}, h("p.note", "Nothing yet: its readings are still to come."))))
+                   h("div", {"id": "computed"}, h("p.note", "Nothing yet: its readings are still to come.")))
+                 if calculated.free_values(bench.part) else NOTHING)
 
     def compute(self, *_):
         """What the procedure computes beside its limits; after the path is on the glass, for it may take a while."""
-        if self.main.screen is not self:
+        if self.main.screen is not self or dom.find("computed") is None:
             return
         rows = [h("div", h("dt", one["label"] + (" " + one["row"] if one["row"] else "")), h("dd", one["text"]))
                 for one in calculated.calculated(self.bench.work, self.bench.flow.last_round)]

@@ -10,7 +10,7 @@ from .. import dom, store
 from ..markup import NOTHING, Html, address, h, join, key
 from . import bench as bench_room
 from .step import Step, step_place
-from .words import answer_text, unit_text
+from .words import answer_text, range_text, unit_text
 
 POINTER_AFTER = 150     # milliseconds from the last keystroke until the pointer moves
 SETS = (2, 3, 5, 10)
@@ -142,7 +142,7 @@ class Measure(Step):
         if meter is None:
             words = "No meter named" if self.function else ""
         else:
-            words = meter.tag + " " + meter.name + (", " + self.range if self.range else "")
+            words = meter.tag + " " + meter.name + (", " + range_text(self.range) if self.range else "")
         state = state_of(self.bench, self.meter)
         return join([key([h("span", words), h("span.note", self.function), h("span.flagged", state) if state else None],
                          "meters", "", "meter-now", aria_expanded="false")])
@@ -177,8 +177,8 @@ class Measure(Step):
                     ranges = one.get("ranges") or []
             rows.append(key([h("span.where", data["tag"] + " " + data["name"]), h("span.note", "range by size"),
                              h("span.flagged", state) if state else None], "meter", data["meter"] + " ", "row"))
-            rows.append(h("div.ranges", [key(one["name"], "meter", data["meter"] + " " + one["name"], "unit")
-                                         for one in ranges]))
+            rows.append(h("div.ranges", [key(range_text(one["name"]), "meter", data["meter"] + " " + one["name"],
+                                             "unit") for one in ranges]))
         dom.fill("meter", h("div.choices", {"role": "group", "aria-label": "Meter"}, rows))
 
     def on_meter(self, arg):

@@ -12,7 +12,7 @@ from ..screen import Screen
 from . import bench as bench_room
 from . import waiting
 from .said import Said
-from .words import WORDS, answer_text, history, value_words
+from .words import WORDS, answer_text, history, range_text, value_words
 
 platform = window.platform
 LONG = 24               # characters of an answer that is shown smaller
@@ -197,7 +197,7 @@ class Step(Screen):
         if meter is None:
             return NOTHING
         return h("p.note", meter.tag + " " + meter.name + ", " + (value.get("function") or "")
-                 + (", " + value["range"] if value.get("range") else ""))
+                 + (", " + range_text(value["range"]) if value.get("range") else ""))
 
     def more(self):
         """The quieter keys."""

@@ -38,6 +38,12 @@ def unit_text(name):
         return name
 
 
+def range_text(name):
+    """A meter's range as it is printed: "5 kohm" is "5 kΩ"."""
+    number, blank, unit = name.partition(" ")
+    return number + ("\u202f" + unit_text(unit) if blank else "")
+
+
 def choice_label(choices, chosen):
     """The label of a choice's id."""
     for one in choices or ():
