@@ -63,9 +63,10 @@ def photograph_phone(address: str) -> None:
             if page.locator("#entry").count():
                 break
             page.locator("#thumb").tap(timeout=20_000)
-        page.fill("#entry", "212")
-        page.locator("#thumb").tap()
-        time.sleep(3)
+        for value in ("39.1", "41.6", "38.4", "40.2", "39.5", "-39.2", "0.500"):
+            page.fill("#entry", value)
+            page.locator("#thumb").tap()
+            time.sleep(2)
         page.screenshot(path=str(OUT / "phone.png"))
         browser.close()
 

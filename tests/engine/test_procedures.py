@@ -140,7 +140,7 @@ def test_a_closing_table_whose_cells_were_left_one_by_one_counts_as_left_and_bou
 
 
 def test_two_unsettled_entries_of_a_meter_in_use_or_of_the_conditions_are_a_conflict_of_the_item():
-    state, phone, other = disputed()
+    state = disputed()
     job = state.jobs["j" * 26]
     made = work.of_item(state, job, job.items["i"], PART, "2026-06-01")
     assert {"meter M1", "conditions"} <= set(made.conflicts)
@@ -159,4 +159,4 @@ def disputed():
         pairs.append(pen.write(job, "conditions.taken", {"ambient": {"text": "20", "unit": "degC"}}))
     pairs.append(one.write(job, "answer.given", {"item": "i", "step": "r", "round": 0, "index": "", "kind": "measure",
                                                  "value": {"text": "20", "unit": "mohm", "meter": "m"}}))
-    return events.fold(pairs), one, two
+    return events.fold(pairs)
