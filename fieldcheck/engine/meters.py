@@ -234,10 +234,9 @@ def reading_list(readings, meter=None, function="", range_name=None, ambient=Non
             for i in range(len(numbers))]
 
 
-def mixed_repeats():
-    """The OutOfRange of repeats of which only some are figures."""
-    return OutOfRange("some of the repeats are out of the meter's range and some are not", "",
-                      "repeat the set on a range that shows them all")
+MIXED_REPEATS = ("some of the repeats are out of the meter's range and some are not", "",
+                 "repeat the set on a range that shows them all")
+"""What is said of repeats of which only some are figures."""
 
 
 def bound_of(readings, meter=None, function="", range_name=None):
@@ -252,7 +251,7 @@ def bound_of(readings, meter=None, function="", range_name=None):
     sides = [one.bound for one in numbers if one.bound]
     if sides:
         if len(sides) < len(numbers) or [side for side in sides if side != sides[0]]:
-            raise mixed_repeats()
+            raise OutOfRange(*MIXED_REPEATS)
         sizes = [float(one.base) for one in numbers]
         return (sides[0], min(sizes) if sides[0] == ">" else max(sizes))
     if kind not in ("over", "under"):

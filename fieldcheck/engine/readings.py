@@ -7,7 +7,7 @@ and whether a reading is older than the service that should have come before it.
 import math
 
 from fieldcheck.engine import entry, events, meters, units
-from fieldcheck.engine.errors import FieldcheckError
+from fieldcheck.engine.errors import FieldcheckError, OutOfRange
 from fieldcheck.engine.figures import parse_decimal
 from fieldcheck.engine.formulas import Bound, MissingInput, evaluate
 from fieldcheck.engine.measured import influence
@@ -293,7 +293,7 @@ def readings_of(value, quantity, unit):
             if not read.values:
                 bare.append(read)
         if bare and numbers:
-            raise meters.mixed_repeats()
+            raise OutOfRange(*meters.MIXED_REPEATS)
         return bare[0] if bare else numbers
     if not value.get("text"):
         raise MissingInput(["a figure"])

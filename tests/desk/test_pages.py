@@ -293,7 +293,7 @@ def test_what_does_not_exist_is_not_found(desk, plural):
     ("equipment.entered", {"equipment": "e" * 26, "kind": "contact-set", "name": "Odd", "identities": [{}]},
      "equipment"),
     ("meter.entered", {"meter": "m" * 26, "tag": "M9", "name": "Odd", "functions": [{"function": 1}]}, "meters"),
-    ("customer.entered", {"customer": "c" * 26, "name": "Odd", "address": None}, "customers"),
+    ("customer.entered", {"customer": "c" * 26, "name": "Odd", "address": "", "decimal_mark": 5}, "customers"),
 ])
 def test_an_odd_entry_of_another_program_does_not_hide_the_list(shop, type, data, plural):
     shop.desk.application.extensions["fieldcheck workshop"].journal.append_own(type, data)

@@ -189,6 +189,8 @@ WORK: Table = {
     "readings.columns_of": lambda dice: [the("steps", dice)[0]],
     "readings.index_of": lambda dice: [dice.choice(("1", "2", "")), dice.choice(("forward", ""))],
     "readings.nameplate_field": lambda dice: [a_work(dice), dice.choice(("rated", "cells", "metal", "nothing"))],
+    "readings.one_figure": lambda dice: [
+        {"text": dice.choice(("1", "2.5", "0.30 A", "1.2 A", "0.5", "3 A", "750 mA", "OL", ">5 A"))}, "current", "A", "rated current"],
     "readings.nameplate_value": lambda dice: [a_work(dice), dice.choice(("rated", "cells", "metal"))],
     "readings.typed": lambda dice: [
         as_data({"text": dice.choice(("1.5", "2k2", "x", "OL")), "unit": dice.choice(("", "kohm"))}),
@@ -198,7 +200,8 @@ WORK: Table = {
     "readings.layout_of": lambda dice: [a_work(dice), ["i", ["i", kept("part"), "steps"], 4]],
     "readings.readings_of": lambda dice: [
         as_data(
-            dice.choice(({"text": "1.5 1.6"}, {"texts": ["1.5", "1.6 k"]}, {"texts": ["1", "OL"]}, {"text": "nothing"}))
+            dice.choice(({"text": "1.5 1.6"}, {"texts": ["1.5", "1.6 k"]}, {"texts": ["OL", "OL"]}, {"text": "2k75"},
+                         {"texts": ["1", "OL"]}, {"text": "nothing"}))
         ),
         "resistance",
         "ohm",
@@ -242,7 +245,6 @@ WORK: Table = {
     ],
     "procedures.slot_for": lambda dice: [instance(dice), dice.choice((None, "1/forward"))],
     "procedures.key_of": lambda dice: [instance(dice), dice.choice((None, "1/forward"))],
-    "outcomes.final_round": with_flow,
     "outcomes.rows": with_flow,
     "outcomes.bounded": with_flow,
     "outcomes.may_choose": lambda dice: [

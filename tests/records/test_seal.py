@@ -31,6 +31,7 @@ from fieldcheck.keys import sealing
 from fieldcheck.keys.sealing import SealingKeys
 from fieldcheck.records import seal as sealer
 from fieldcheck.records import sealcheck
+from fieldcheck.records.apart import apart
 from fieldcheck.records.pdf import render
 from fieldcheck.records.seal import seal
 from fieldcheck.records.sealcheck import check
@@ -320,7 +321,7 @@ def test_a_seal_that_carries_its_root_along_is_not_of_our_kind(unsealed: bytes, 
     out = io.BytesIO()
     sealing_writer = sealer._QuietWriter(io.BytesIO(unsealed))
     meta = signers.PdfSignatureMetadata(field_name="RecordSeal", subfilter=fields.SigSeedSubFilter.PADES)
-    sealer._DatedSigner(meta, signer, sample.WHEN).sign_pdf(sealing_writer, output=out)
+    apart(sealer._DatedSigner(meta, signer, sample.WHEN).sign_pdf, sealing_writer, output=out)
     assert check(out.getvalue(), keys.root_pem).sentence == sealcheck.NOT_OURS
 
 
@@ -366,7 +367,7 @@ def test_two_seals_are_one_too_many(unsealed: bytes, keys: SealingKeys) -> None:
         meta = signers.PdfSignatureMetadata(field_name=name, subfilter=fields.SigSeedSubFilter.PADES)
         out = io.BytesIO()
         signer = signers.PdfSigner(meta, signer=sealer._signer(keys))
-        signer.sign_pdf(IncrementalPdfFileWriter(io.BytesIO(pdf)), output=out)
+        apart(signer.sign_pdf, IncrementalPdfFileWriter(io.BytesIO(pdf)), output=out)
         pdf = out.getvalue()
     assert check(pdf, keys.root_pem).sentence == sealcheck.SEVERAL
 
