@@ -190,7 +190,9 @@ WORK: Table = {
     "readings.index_of": lambda dice: [dice.choice(("1", "2", "")), dice.choice(("forward", ""))],
     "readings.nameplate_field": lambda dice: [a_work(dice), dice.choice(("rated", "cells", "metal", "nothing"))],
     "readings.one_figure": lambda dice: [
-        {"text": dice.choice(("1", "2.5", "0.30 A", "1.2 A", "0.5", "3 A", "750 mA", "OL", ">5 A"))}, "current", "A", "rated current"],
+        {"text": dice.choice(("1", "2.5", "0.30 A", "1.2 A", "0.5", "3 A", "750 mA", "OL", ">5 A"))},
+        "current", "A", "rated current",
+    ],
     "readings.nameplate_value": lambda dice: [a_work(dice), dice.choice(("rated", "cells", "metal"))],
     "readings.typed": lambda dice: [
         as_data({"text": dice.choice(("1.5", "2k2", "x", "OL")), "unit": dice.choice(("", "kohm"))}),
