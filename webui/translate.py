@@ -58,21 +58,6 @@ PATCHES = [
         "this[names[i]]=stars[i]?$B.$list(v===undefined?[]:v):v}}})(arg_list.slice(),"
         "arg_list.length?args.split(',').map(a=>a.split(/\\s+/)[0].endsWith('*')):[])",
     ),
-    (
-        "a tuple or list made of a plain array, as str.partition and math.frexp make theirs: it would be walked slowly",
-        "if(Array.isArray(obj)&& obj.ob_type){\nobj=obj.slice()",
-        "if(Array.isArray(obj)){\nobj=obj.slice()",
-    ),
-    (
-        "a loop over a dict or text: each would end by an exception that gets a traceback and is caught at once",
-        "if(next_func !==null){return{\n[Symbol.iterator](){return this},next(){set_lineno(frame,lineno)\ntry{",
-        "if(next_func !==null){if($B.get_class(next_func)===$B.wrapper_descriptor){\n"
-        "var own=$B.get_class(it).tp_iternext\n"
-        "if(typeof own==='function'&&own.constructor.name==='GeneratorFunction'){return{\n"
-        "[Symbol.iterator](){return this},next(){set_lineno(frame,lineno)\nvar got=own(it).next()\n"
-        "return got.done?{done:true,value:null}:got}}}}\n"
-        "return{\n[Symbol.iterator](){return this},next(){set_lineno(frame,lineno)\ntry{",
-    ),
 ]
 COMPILER_STARTS = "// >>> brython compiler chain\n"
 COMPILER_ENDS = "// <<< brython compiler chain\n"

@@ -31,10 +31,6 @@ LETTERS = {"resistance": {"R": "ohm", "r": "ohm", "K": "kohm", "k": "kohm", "M":
 _FOREIGN_DIGITS = "０１２３４５６７８９٠١٢٣٤٥٦٧٨٩۰۱۲۳۴۵۶۷۸۹०१२३४५६७८९²³¹⁰⁴⁵⁶⁷⁸⁹₀₁₂₃₄₅₆₇₈₉½¼¾"
 
 
-REMEMBERED = 64
-_known = {}     # one reading is looked at several times: while it is typed, when it is taken, when it is judged
-
-
 @frozen("value", "digits", "unit", "base", "resolution_base", "bound")
 class Number:
     """One number as typed. value: float in `unit`; digits: its text with a point; base: float in the SI base
@@ -55,20 +51,6 @@ def read(text, quantity_name, decimal="either", default_unit=None, allow=EVERYTH
     The error's `choices` holds the texts to pick from where the entry can be read in two ways, else ().
     UnitError, for the program's own mistakes: unknown quantity, or a default unit that is not of it.
     """
-    own = "" if default_unit is None else default_unit
-    if decimal != "either" or allow is not EVERYTHING or not isinstance(text, str) or not isinstance(own, str):
-        return _read(text, quantity_name, decimal, default_unit, allow)
-    name = quantity_name + " " + str(len(own)) + (" " if default_unit is None else ":") + own + text
-    found = _known.get(name)
-    if found is None:
-        found = _read(text, quantity_name, decimal, default_unit, allow)
-        if len(_known) >= REMEMBERED:
-            _known.clear()
-        _known[name] = found
-    return found
-
-
-def _read(text, quantity_name, decimal, default_unit, allow):
     of = quantity(quantity_name)
     meant = first_unit(quantity_name) if default_unit is None else default_unit
     if isinstance(meant, str):

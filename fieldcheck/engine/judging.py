@@ -165,14 +165,9 @@ def _same(value):
 
 
 def value_texts(work, judged):
-    """verdicts.Printed of a verdict with its unit: (Printed, unit text); kept as long as the verdict is."""
-    name = (judged.limit["id"], "texts of " + judged.key, judged.round)
-    kept = work.cache.get(name)
-    if kept is None or kept[0] is not judged:
-        unit, convert = display(work, judged)
-        kept = (judged, verdicts.printed(judged.verdict, convert), unit)
-        work.cache[name] = kept
-    return kept[1], kept[2]
+    """verdicts.Printed of a verdict with its unit: (Printed, unit text)."""
+    unit, convert = display(work, judged)
+    return verdicts.printed(judged.verdict, convert), unit
 
 
 def printed(work, judged):
