@@ -22,6 +22,7 @@ from fieldcheck.journal.verify import verify
 
 LOOPBACK = "127.0.0.1"
 SECONDS_TO_FINISH = 5.0
+SECONDS_KEPT_OPEN = 75.0
 
 Wsgi = Callable[[dict[str, Any], Callable[..., Any]], Iterable[bytes]]  # WSGI environments hold values of any kind
 
@@ -85,6 +86,8 @@ def configuration(door: socket.socket) -> Config:
     config.errorlog.setLevel(logging.WARNING)
     config.include_server_header = False
     config.graceful_timeout = SECONDS_TO_FINISH
+    # A phone asks every few seconds: a connection closed for idleness just then would be a reset in its console.
+    config.keep_alive_timeout = SECONDS_KEPT_OPEN
     config.wsgi_max_body_size = BLOB_BYTES + 1      # one more, so that the desk itself says that it is too large
     return config
 

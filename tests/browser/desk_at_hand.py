@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass
@@ -10,8 +9,8 @@ from datetime import UTC, datetime
 from pathlib import Path
 from typing import Any
 
+from door import opened
 from trial_rules import METERS, TrialRulebook, rulebook
-from werkzeug.serving import make_server
 
 from fieldcheck.desk.app import create_app
 from fieldcheck.desk.shared import KEY
@@ -49,16 +48,10 @@ def running(data: Path, phone: Path, rules: Rulebook | None = None, procedure: s
     """A desk with one person, customer, site, two meters and one open job with two items of one procedure."""
     book: Rulebook = rules or rulebook()
     app = create_app(data, book, phone)
-    server = make_server("127.0.0.1", 0, app, threaded=True)
-    thread = threading.Thread(target=server.serve_forever, daemon=True)
-    thread.start()
-    desk = Desk(f"http://127.0.0.1:{server.server_port}/phone/", app.extensions[KEY], {})
-    furnish(desk, book, procedure)
-    try:
+    with opened(app) as port:
+        desk = Desk(f"http://127.0.0.1:{port}/phone/", app.extensions[KEY], {})
+        furnish(desk, book, procedure)
         yield desk
-    finally:
-        server.shutdown()
-        thread.join(10)
 
 
 def furnish(desk: Desk, book: Rulebook, name_of_procedure: str) -> None:

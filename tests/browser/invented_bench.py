@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import sys
-import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from functools import cache
@@ -11,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from desk_at_hand import Desk
-from werkzeug.serving import make_server
+from door import opened
 
 from fieldcheck import rulebook
 from fieldcheck.desk.app import create_app
@@ -56,18 +55,12 @@ def meters() -> dict[str, dict[str, Any]]:
 def bench(data: Path, phone: Path, jobs: list[tuple[str, str, str]]) -> Iterator[Desk]:
     """A running desk.  jobs: (job number, procedure, depth); each job has one item."""
     app = create_app(data, shipped(), phone)
-    server = make_server("127.0.0.1", 0, app, threaded=True)
-    thread = threading.Thread(target=server.serve_forever, daemon=True)
-    thread.start()
-    desk = Desk(f"http://127.0.0.1:{server.server_port}/phone/", app.extensions[KEY], {})
-    furnish(desk)
-    for number, procedure, depth in jobs:
-        open_job(desk, number, procedure, depth)
-    try:
+    with opened(app) as port:
+        desk = Desk(f"http://127.0.0.1:{port}/phone/", app.extensions[KEY], {})
+        furnish(desk)
+        for number, procedure, depth in jobs:
+            open_job(desk, number, procedure, depth)
         yield desk
-    finally:
-        server.shutdown()
-        thread.join(10)
 
 
 def furnish(desk: Desk) -> None:
